@@ -1,0 +1,1 @@
+//! Text of a fence to a problem and its source map.

@@ -1,0 +1,1 @@
+//! Numerics of chemical equilibrium: tableau in, certified answer out.

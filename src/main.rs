@@ -1,0 +1,3 @@
+//! The `ionfolio` program.
+
+fn main() {}

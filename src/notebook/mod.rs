@@ -1,0 +1,1 @@
+//! The folder: settings, own constants, pages, attachments, safe replacement of a file.

@@ -1,0 +1,1 @@
+//! A Markdown page as bytes: finding fences and results, splicing.

@@ -1,0 +1,1 @@
+//! What is asked, in types.

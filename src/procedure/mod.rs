@@ -1,0 +1,1 @@
+//! The uses, as functions: compute, check, seal, verify and the rest.

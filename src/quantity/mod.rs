@@ -1,0 +1,1 @@
+//! Numbers with units and uncertainty, as a laboratory writes them.

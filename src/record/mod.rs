@@ -1,0 +1,1 @@
+//! Record and act lines, digest, signature, roster, chain, verification.

@@ -1,0 +1,1 @@
+//! Answer to Markdown, SVG and JSON.

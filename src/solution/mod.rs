@@ -1,0 +1,1 @@
+//! Problem to answer, with budget, shortcuts and assumptions.

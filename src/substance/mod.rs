@@ -1,0 +1,1 @@
+//! The constants library and its look-up.

@@ -1,0 +1,1 @@
+//! A YAML mapping with the place of every key and value.
