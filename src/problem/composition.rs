@@ -1,0 +1,142 @@
+//! A liquid as it was put together: substances, portions of other solutions, water.
+
+use crate::problem::{Input, InputId};
+use crate::quantity::{
+    Amount, AmountConcentration, Density, Mass, MassConcentration, MassFraction, Molality, Number,
+    Volume,
+};
+use crate::substance::Form;
+use std::sync::Arc;
+
+/// What a liquid was made of.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Composition {
+    /// How the final volume is known.
+    pub made_up: MadeUp,
+    /// What went in, in the order in which it was stated.
+    pub ingredients: Vec<Ingredient>,
+}
+
+/// How the final volume of a liquid is known.
+#[derive(Clone, Debug, PartialEq)]
+pub enum MadeUp {
+    /// Filled up with water to a stated volume at the temperature of the block.
+    To(Input<Volume>),
+    /// The volumes of the portions, added; that volumes are additive is a stated assumption.
+    SumOfPortions,
+    /// Only concentrations were stated; no volume is needed.
+    Unstated,
+}
+
+/// One thing that went into a liquid.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Ingredient {
+    /// A substance, as a concentration in the final solution, a mass, an amount or a volume of a stock.
+    Substance(Box<Content>),
+    /// A volume of a solution that another block, or a portion's own contents, describes.
+    Solution(SolutionPortion),
+    /// A volume of water; only where volumes are added.
+    Water(Input<Volume>),
+}
+
+/// A portion of a solution with a composition of its own.
+#[derive(Clone, Debug, PartialEq)]
+pub struct SolutionPortion {
+    /// How much was taken.
+    pub volume: Input<Volume>,
+    /// The block that describes it, or `None` where the portion lists its own contents.
+    pub reference: Option<SolutionReference>,
+    /// What it is made of; inputs of another block carry that block's name in their identity.
+    pub composition: Arc<Composition>,
+}
+
+/// The name of another block's solution.
+#[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub struct SolutionReference {
+    /// The page, relative to the notebook, or `None` for the same page.
+    pub page: Option<String>,
+    /// The block's label.
+    pub label: String,
+}
+
+/// One substance and how much of it went in.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Content {
+    /// The path of this item; its quantities lie below it.
+    pub id: InputId,
+    /// What was taken.
+    pub form: Arc<Form>,
+    /// How much.
+    pub amount: ContentAmount,
+    /// What a certificate or a standardisation says of it.
+    pub corrections: Corrections,
+    /// Where it came from.
+    pub trace: Trace,
+}
+
+/// How much of a substance went in.
+#[derive(Clone, Debug, PartialEq)]
+pub enum ContentAmount {
+    /// Analytical concentration in the final solution.
+    Concentration(Input<AmountConcentration>),
+    /// Molality in the final solution.
+    Molality(Input<Molality>),
+    /// Mass concentration in the final solution.
+    MassConcentration(Input<MassConcentration>),
+    /// Mass weighed in.
+    Mass(Input<Mass>),
+    /// Amount of substance put in.
+    Amount(Input<Amount>),
+    /// A measured portion of a stock of stated strength.
+    Stock {
+        /// How much of the stock was taken.
+        taken: Taken,
+        /// Its strength.
+        strength: Strength,
+    },
+}
+
+/// A measured portion of a liquid.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Taken {
+    /// By volume.
+    Volume(Input<Volume>),
+    /// By mass; needs the density of the stock unless its strength is a mass fraction or a molality.
+    Mass(Input<Mass>),
+}
+
+/// The strength of a stock.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Strength {
+    /// Amount concentration.
+    Concentration(Input<AmountConcentration>),
+    /// Mass concentration.
+    MassConcentration(Input<MassConcentration>),
+    /// Mass fraction; the density is needed where the portion was taken by volume.
+    MassFraction {
+        /// Mass of the substance by mass of the stock.
+        fraction: Input<MassFraction>,
+        /// Density of the stock.
+        density: Option<Input<Density>>,
+    },
+}
+
+/// What a certificate or a standardisation says of a substance.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Corrections {
+    /// Assay or purity: mass of the substance by mass of the portion.
+    pub purity: Option<Input<MassFraction>>,
+    /// Moisture or loss on drying: mass of water by mass of the portion, taken off before the purity.
+    pub water: Option<Input<MassFraction>>,
+    /// Titre: true strength by nominal strength.
+    pub factor: Option<Input<Number>>,
+}
+
+/// Where a substance came from; it goes into the record as written.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Trace {
+    /// Lot or batch.
+    pub lot: Option<String>,
+    /// Expiry, as written.
+    pub expiry: Option<String>,
+}
