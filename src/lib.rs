@@ -20,17 +20,17 @@
 //! - Text positions stop at `block`; above it an input has an `InputId`, and the source map turns it back
 //!   into a span.
 
-pub mod text;
-pub mod quantity;
-pub mod equilibrium;
-pub mod record;
-pub mod page;
-pub mod yaml;
-pub mod substance;
-pub mod problem;
 pub mod block;
-pub mod solution;
-pub mod report;
-pub mod notebook;
-pub mod procedure;
 pub mod cli;
+pub mod equilibrium;
+pub mod notebook;
+pub mod page;
+pub mod problem;
+pub mod procedure;
+pub mod quantity;
+pub mod record;
+pub mod report;
+pub mod solution;
+pub mod substance;
+pub mod text;
+pub mod yaml;

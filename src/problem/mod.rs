@@ -30,7 +30,7 @@ pub use preparation::{
 };
 pub use speciation::Speciation;
 pub use statement::{
-    AcceptanceLimit, Annotations, HandValue, Label, LabelError, MeasuredReading, Problem, Reporting, ShortcutName,
-    Statement,
+    AcceptanceLimit, Annotations, HandValue, Label, LabelError, MeasuredReading, Problem,
+    Reporting, ShortcutName, Statement,
 };
 pub use titration::{FitParameter, Readings, ReadingsPoint, Signal, Titration};

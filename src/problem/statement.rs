@@ -1,8 +1,6 @@
 //! One block, read.
 
-use crate::problem::{
-    Adjustment, Conditions, Input, Mixing, Preparation, Speciation, Titration,
-};
+use crate::problem::{Adjustment, Conditions, Input, Mixing, Preparation, Speciation, Titration};
 use crate::quantity::{Number, RoundingRule, Temperature};
 use std::fmt;
 

@@ -110,7 +110,11 @@ fn imports_follow_the_table() {
             }
         }
     }
-    assert!(wrong.is_empty(), "imports against the table:\n{}", wrong.join("\n"));
+    assert!(
+        wrong.is_empty(),
+        "imports against the table:\n{}",
+        wrong.join("\n")
+    );
 }
 
 #[test]
@@ -143,12 +147,18 @@ fn files_stay_short() {
             (lines > limit).then(|| format!("{} has {lines} lines", show(&file)))
         })
         .collect();
-    assert!(long.is_empty(), "files over the budget:\n{}", long.join("\n"));
+    assert!(
+        long.is_empty(),
+        "files over the budget:\n{}",
+        long.join("\n")
+    );
 }
 
 #[test]
 fn no_grab_bags() {
-    let banned = ["utils", "util", "common", "helpers", "misc", "types", "manager", "core"];
+    let banned = [
+        "utils", "util", "common", "helpers", "misc", "types", "manager", "core",
+    ];
     let found: Vec<String> = rust_files(&source())
         .into_iter()
         .filter(|file| {
@@ -178,7 +188,10 @@ fn top_level_is_the_fixed_list() {
         .filter(|name| !name.starts_with('.') && name != "target")
         .collect();
     for name in &found {
-        assert!(TOP_LEVEL.contains(&name.as_str()), "{name} at the top level");
+        assert!(
+            TOP_LEVEL.contains(&name.as_str()),
+            "{name} at the top level"
+        );
     }
     for name in TOP_LEVEL {
         assert!(found.iter().any(|found| found == name), "{name} is missing");
@@ -199,9 +212,36 @@ fn developers_page_names_every_room() {
 #[test]
 fn documentation_of_numbers_gives_their_unit() {
     let words = [
-        "unit", "mol", "kg", "litre", "gram", "kelvin", "celsius", "°c", "ph", "pk", "dimensionless", "lg", "ratio",
-        "fraction", "coefficient", "charge", "second", "metre", "volt", "ml", " l", " g", "percent", "1/", "pa",
-        "probability", "natural logarithm", "logarithm", "number", "decimal",
+        "unit",
+        "mol",
+        "kg",
+        "litre",
+        "gram",
+        "kelvin",
+        "celsius",
+        "°c",
+        "ph",
+        "pk",
+        "dimensionless",
+        "lg",
+        "ratio",
+        "fraction",
+        "coefficient",
+        "charge",
+        "second",
+        "metre",
+        "volt",
+        "ml",
+        " l",
+        " g",
+        "percent",
+        "1/",
+        "pa",
+        "probability",
+        "natural logarithm",
+        "logarithm",
+        "number",
+        "decimal",
     ];
     let mut bare = Vec::new();
     for file in rust_files(&source()) {
@@ -213,7 +253,11 @@ fn documentation_of_numbers_gives_their_unit() {
             }
         }
     }
-    assert!(bare.is_empty(), "numbers without a unit in their documentation:\n{}", bare.join("\n"));
+    assert!(
+        bare.is_empty(),
+        "numbers without a unit in their documentation:\n{}",
+        bare.join("\n")
+    );
 }
 
 /// Public functions whose signature returns a bare `f64`, with the documentation above each.
@@ -267,7 +311,8 @@ fn packages(text: &str) -> BTreeSet<String> {
 }
 
 fn code_lines(text: &str) -> impl Iterator<Item = &str> {
-    text.lines().filter(|line| !line.trim_start().starts_with("//"))
+    text.lines()
+        .filter(|line| !line.trim_start().starts_with("//"))
 }
 
 fn identifier(text: &str) -> String {
@@ -310,7 +355,10 @@ fn read(path: &Path) -> String {
 }
 
 fn show(path: &Path) -> String {
-    path.strip_prefix(root()).unwrap_or(path).display().to_string()
+    path.strip_prefix(root())
+        .unwrap_or(path)
+        .display()
+        .to_string()
 }
 
 fn name_of(path: &Path) -> String {

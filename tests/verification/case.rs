@@ -65,11 +65,17 @@ impl Case {
         match (inside, miss) {
             (true, None) => Ok(()),
             (false, None) => Err(self.line(found, "outside")),
-            (true, Some(_)) => Err(self.line(found, "listed as a known miss but inside: strike it from misses.yaml")),
+            (true, Some(_)) => Err(self.line(
+                found,
+                "listed as a known miss but inside: strike it from misses.yaml",
+            )),
             (false, Some(miss)) if (off - number(&miss.off)).abs() <= MISS_STEP => Ok(()),
             (false, Some(miss)) => Err(self.line(
                 found,
-                &format!("a known miss, written down as {} ({})", miss.off, miss.reason),
+                &format!(
+                    "a known miss, written down as {} ({})",
+                    miss.off, miss.reason
+                ),
             )),
         }
     }

@@ -24,7 +24,8 @@ struct Figure {
 /// One test for each figure of `figures.yaml`.
 pub(crate) fn trials(folder: &Path, cases: &[Case]) -> Vec<Trial> {
     let path = folder.join("figures.yaml");
-    let text = fs::read_to_string(&path).unwrap_or_else(|error| panic!("{}: {error}", path.display()));
+    let text =
+        fs::read_to_string(&path).unwrap_or_else(|error| panic!("{}: {error}", path.display()));
     let figures: Vec<Figure> =
         serde_yaml::from_str(&text).unwrap_or_else(|error| panic!("{}: {error}", path.display()));
     figures
@@ -54,7 +55,11 @@ impl Figure {
         let count = off.len() as f64;
         let rms = (off.iter().map(|d| d * d).sum::<f64>() / count).sqrt();
         if self.rms.as_deref().is_some_and(|limit| rms > number(limit)) {
-            return Err(format!("{}: rms {rms:.4} over {count} cases; {}", self.set, self.reason).into());
+            return Err(format!(
+                "{}: rms {rms:.4} over {count} cases; {}",
+                self.set, self.reason
+            )
+            .into());
         }
         for (distance, share) in &self.within {
             let inside = off.iter().filter(|d| **d <= number(distance)).count() as f64 / count;

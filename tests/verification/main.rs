@@ -36,23 +36,30 @@ fn main() -> ExitCode {
         }
     }
     trials.extend(figures::trials(&folder, &cases));
-    trials.push(Trial::test("misses.yaml names cases that exist", move || {
-        for (set, file) in misses.iter() {
-            for name in file.keys() {
-                if !known.iter().any(|(s, n)| s == set && n == name) {
-                    return Err(format!("{set}: {name}").into());
+    trials.push(Trial::test(
+        "misses.yaml names cases that exist",
+        move || {
+            for (set, file) in misses.iter() {
+                for name in file.keys() {
+                    if !known.iter().any(|(s, n)| s == set && n == name) {
+                        return Err(format!("{set}: {name}").into());
+                    }
                 }
             }
-        }
-        Ok(())
-    }));
+            Ok(())
+        },
+    ));
     libtest_mimic::run(&arguments, trials).exit_code()
 }
 
 fn case_files(folder: &std::path::Path) -> Vec<PathBuf> {
     let mut files: Vec<PathBuf> = fs::read_dir(folder.join("cases"))
         .unwrap_or_else(|error| panic!("cases: {error}"))
-        .map(|entry| entry.unwrap_or_else(|error| panic!("cases: {error}")).path())
+        .map(|entry| {
+            entry
+                .unwrap_or_else(|error| panic!("cases: {error}"))
+                .path()
+        })
         .collect();
     files.sort();
     files
@@ -65,6 +72,7 @@ fn stem(path: &std::path::Path) -> String {
 }
 
 fn read<T: serde::de::DeserializeOwned>(path: &std::path::Path) -> T {
-    let text = fs::read_to_string(path).unwrap_or_else(|error| panic!("{}: {error}", path.display()));
+    let text =
+        fs::read_to_string(path).unwrap_or_else(|error| panic!("{}: {error}", path.display()));
     serde_yaml::from_str(&text).unwrap_or_else(|error| panic!("{}: {error}", path.display()))
 }
