@@ -275,6 +275,11 @@ mod tests {
     }
 
     proptest::proptest! {
+        #![proptest_config(proptest::test_runner::Config {
+            failure_persistence: None,
+            ..proptest::test_runner::Config::default()
+        })]
+
         #[test]
         fn no_text_breaks_the_reader_or_is_placed_outside(text in "[a-c:\\-\\[\\]{}'\"#&*!|>?%@\t\r\n µ\\\\~<,]{0,60}") {
             let mut found = Vec::new();
