@@ -191,3 +191,107 @@ fn owned_start(text: &str, first: usize) -> usize {
     };
     ending_before(text, ending).unwrap_or(ending)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::{
+        page::Page,
+        text::{Diagnostic, Rule},
+    };
+
+    const A: &str = "<!-- ionfolio result a -->\n";
+    const END_A: &str = "<!-- ionfolio end a -->\n";
+    const B: &str = "<!-- ionfolio result b -->\n";
+    const END_B: &str = "<!-- ionfolio end b -->\n";
+
+    fn found(parts: &[&str]) -> (Vec<String>, Vec<Rule>) {
+        let page = Page::read(parts.concat().into_bytes()).unwrap();
+        let labels = page
+            .results()
+            .iter()
+            .map(|region| region.label().to_owned())
+            .collect();
+        (
+            labels,
+            page.diagnostics().iter().map(Diagnostic::rule).collect(),
+        )
+    }
+
+    fn labels(names: &[&str]) -> Vec<String> {
+        names.iter().map(|&name| name.to_owned()).collect()
+    }
+
+    #[test]
+    fn results_follow_each_other() {
+        assert_eq!(
+            found(&[A, "x\n", END_A, B, "y\n", END_B]),
+            (labels(&["a", "b"]), vec![])
+        );
+        assert_eq!(
+            found(&["text\n", A, END_A, "text\n"]),
+            (labels(&["a"]), vec![])
+        );
+    }
+
+    #[test]
+    fn comments_that_stand_alone_are_reported() {
+        assert_eq!(
+            found(&[A, "x\n"]),
+            (labels(&[]), vec![Rule::ResultUnpaired])
+        );
+        assert_eq!(found(&[END_A]), (labels(&[]), vec![Rule::ResultUnpaired]));
+        assert_eq!(
+            found(&[A, B, END_B]),
+            (labels(&["b"]), vec![Rule::ResultUnpaired])
+        );
+        let nested = vec![Rule::ResultNested, Rule::ResultUnpaired];
+        assert_eq!(found(&[A, B, END_B, END_A]), (labels(&["b"]), nested));
+        let slipped = vec![
+            Rule::ResultNested,
+            Rule::ResultComment,
+            Rule::ResultUnpaired,
+        ];
+        assert_eq!(
+            found(&[A, "<!-- ionfolio end  a -->\n", END_A]),
+            (labels(&[]), slipped)
+        );
+    }
+
+    #[test]
+    fn a_fence_left_open_in_a_result_takes_its_end_away() {
+        assert_eq!(
+            found(&[A, "```\nx\n", END_A]),
+            (labels(&[]), vec![Rule::ResultUnpaired])
+        );
+    }
+
+    #[test]
+    fn comments_shown_in_code_are_no_results_and_moved_ones_are_reported() {
+        assert_eq!(
+            found(&["```\n", A, END_A, "```\n", "    ", A]),
+            (labels(&[]), vec![])
+        );
+        for text in [
+            ["- ", A],
+            ["> ", A],
+            ["  ", A],
+            ["<div>\n", A],
+            ["<!--\n", A],
+        ] {
+            assert_eq!(
+                found(&text),
+                (labels(&[]), vec![Rule::ResultMisplaced]),
+                "{text:?}"
+            );
+        }
+    }
+
+    #[test]
+    fn two_results_of_one_label_need_a_mark() {
+        assert_eq!(found(&[A, END_A, A, END_A]).1, [Rule::ResultDuplicate]);
+        assert_eq!(
+            found(&["<!-- ionfolio result a superseded -->\n", END_A, A, END_A]).1,
+            []
+        );
+    }
+}

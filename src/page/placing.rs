@@ -37,6 +37,12 @@ pub enum PlacingError {
         /// The label.
         label: String,
     },
+    /// The text is for another result.
+    #[error("the result is `{label}`, the text is for another")]
+    OtherLabel {
+        /// The result's label.
+        label: String,
+    },
     /// The notice is not one line of text.
     #[error("the notice is not one line")]
     Notice,
@@ -70,6 +76,40 @@ impl Page {
             (Some(region), None) => self.replacing(region, written),
             (None, _) => self.inserting(block, written),
         }
+    }
+
+    /// The edit that puts a text in the place of this very result, whatever its mark; the mark and the notice stay.
+    ///
+    /// # Errors
+    ///
+    /// [`PlacingError::Sealed`] if the result is sealed and the text does more than add acts,
+    /// [`PlacingError::OtherLabel`] if the text is for another label.
+    pub fn replacing(&self, region: &Region, written: &Written) -> Result<Edit, PlacingError> {
+        if written.label() != region.label() {
+            return Err(PlacingError::OtherLabel {
+                label: region.label().to_owned(),
+            });
+        }
+        if !region.is_draft() && !adds_to(written, region) {
+            return Err(PlacingError::Sealed {
+                label: region.label().to_owned(),
+            });
+        }
+        let inner = written.inner();
+        let comment_end = region.opening.end();
+        if region.inner().text() == inner {
+            return Ok(Edit {
+                span: Span::at(comment_end),
+                replacement: String::new(),
+            });
+        }
+        let ending = LineEnding::of_line(self.text(), region.opening.start());
+        let last = closing(region.label());
+        let span = Span::new(comment_end, region.span().end());
+        Ok(Edit {
+            span,
+            replacement: with_ending(&format!("\n{inner}{last}"), ending),
+        })
     }
 
     /// The edit that marks a result and puts a visible line above it: `> **Superseded** ` and the notice, which
@@ -140,29 +180,6 @@ impl Page {
         })
     }
 
-    fn replacing(&self, region: &Region, written: &Written) -> Result<Edit, PlacingError> {
-        if !region.is_draft() && !adds_to(written, region) {
-            return Err(PlacingError::Sealed {
-                label: region.label().to_owned(),
-            });
-        }
-        let inner = written.inner();
-        let comment_end = region.opening.end();
-        if region.inner().text() == inner {
-            return Ok(Edit {
-                span: Span::at(comment_end),
-                replacement: String::new(),
-            });
-        }
-        let ending = LineEnding::of_line(self.text(), region.opening.start());
-        let last = closing(region.label());
-        let span = Span::new(comment_end, region.span().end());
-        Ok(Edit {
-            span,
-            replacement: with_ending(&format!("\n{inner}{last}"), ending),
-        })
-    }
-
     /// The end of the results that follow `place` without a line between; `place` itself if there are none.
     fn after_results_at(&self, place: usize) -> usize {
         let regions = self.results();
@@ -184,4 +201,130 @@ fn adds_to(written: &Written, region: &Region) -> bool {
             .iter()
             .zip(written.acts())
             .all(|(stands, given)| stands.content.text() == given)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    const PAGE: &str = "- x\r\n\r\n  ```equilibrium\r\n  label: a\r\n  ```\r\n\r\n\r\ntext  \r\n";
+
+    fn read(text: impl Into<Vec<u8>>) -> Page {
+        Page::read(text.into()).unwrap()
+    }
+
+    fn put(page: &Page, written: &Written) -> Result<String, PlacingError> {
+        let edit = page.placing(&page.blocks()[0], written)?;
+        Ok(String::from_utf8(page.with(vec![edit]).unwrap()).unwrap())
+    }
+
+    fn sealed(acts: &[&str]) -> Written {
+        let acts = acts.iter().map(|&act| act.to_owned()).collect();
+        Written::sealed("a", "**x**\n", "r 1\nr 2\n", acts).unwrap()
+    }
+
+    #[test]
+    fn a_result_stands_after_the_list_with_the_pages_line_endings() {
+        let with_result = put(&read(PAGE), &Written::draft("a", "**x**\n").unwrap()).unwrap();
+        let inserted = "\r\n<!-- ionfolio result a -->\r\n**x**\r\n<!-- ionfolio end a -->\r\n";
+        assert_eq!(
+            with_result,
+            PAGE.replace("  ```\r\n\r\n\r\n", &format!("  ```\r\n{inserted}\r\n\r\n"))
+        );
+    }
+
+    #[test]
+    fn the_parts_are_the_bytes_that_are_hashed() {
+        let page = read(put(&read(PAGE), &sealed(&["act 1\nsig\n"])).unwrap());
+        let region = &page.results()[0];
+        assert_eq!(
+            region.inner().text(),
+            "**x**\n\n```record\nr 1\nr 2\n```\n\n```act\nact 1\nsig\n```\n"
+        );
+        assert_eq!(region.answer().text(), "**x**\n");
+        assert_eq!(region.record().unwrap().content.text(), "r 1\nr 2\n");
+        assert_eq!(region.acts()[0].content.text(), "act 1\nsig\n");
+        assert_eq!(
+            region.acts()[0].span.of(page.text()),
+            Some("```act\r\nact 1\r\nsig\r\n```")
+        );
+        assert!(!region.is_draft());
+    }
+
+    #[test]
+    fn a_sealed_result_is_only_added_to() {
+        let draft = read(put(&read(PAGE), &Written::draft("a", "old\n").unwrap()).unwrap());
+        let page = read(put(&draft, &sealed(&["one\n"])).unwrap());
+        let refused = Err(PlacingError::Sealed {
+            label: "a".to_owned(),
+        });
+        assert_eq!(
+            put(&page, &Written::draft("a", "**x**\n").unwrap()),
+            refused
+        );
+        assert_eq!(put(&page, &sealed(&[])), refused);
+        assert_eq!(put(&page, &sealed(&["other\n", "two\n"])), refused);
+        let other = Written::draft("b", "x\n").unwrap();
+        let expected = Err(PlacingError::OtherLabel {
+            label: "a".to_owned(),
+        });
+        assert_eq!(page.replacing(&page.results()[0], &other), expected);
+        let added = read(put(&page, &sealed(&["one\n", "two\n"])).unwrap());
+        assert_eq!(added.results()[0].acts().len(), 2);
+        assert_eq!(added.without_results(), PAGE.as_bytes());
+    }
+
+    #[test]
+    fn a_superseded_result_stays_and_the_new_one_stands_below() {
+        let page = read(put(&read(PAGE), &sealed(&["one\n"])).unwrap());
+        let old = page.results()[0].answer().clone();
+        let edit = page
+            .marking(
+                &page.results()[0],
+                Mark::Superseded,
+                "by `a`: balance was out",
+            )
+            .unwrap();
+        let page = read(page.with(vec![edit]).unwrap());
+        assert_eq!(page.results()[0].answer().text(), old.text());
+        let notice = page.results()[0]
+            .notice()
+            .and_then(|line| line.of(page.text()));
+        assert_eq!(notice, Some("> **Superseded** by `a`: balance was out"));
+        let page = read(put(&page, &Written::draft("a", "new\n").unwrap()).unwrap());
+        let answers: Vec<_> = page
+            .results()
+            .iter()
+            .map(|region| region.answer().text())
+            .collect();
+        assert_eq!(answers, [old.text(), "new\n"]);
+        assert_eq!(page.diagnostics(), []);
+    }
+
+    #[test]
+    fn nothing_is_put_where_it_would_be_lost_or_doubled() {
+        let written = Written::draft("a", "x\n").unwrap();
+        let refused = |text: &str| put(&read(text), &written).unwrap_err();
+        assert_eq!(refused("```equilibrium\n"), PlacingError::OpenBlock);
+        assert_eq!(
+            refused("```equilibrium\n```\r"),
+            PlacingError::LoneCarriageReturn
+        );
+        let (first, last) = ("<!-- ionfolio result a -->\n", "<!-- ionfolio end a -->\n");
+        let block = "```equilibrium\n```\n";
+        let label = || "a".to_owned();
+        assert_eq!(
+            refused(&format!("{block}{first}")),
+            PlacingError::Damaged { label: label() }
+        );
+        assert_eq!(
+            refused(&format!("{block}{first}{last}{first}{last}")),
+            PlacingError::Duplicate { label: label() }
+        );
+        let page = read(format!("{block}{first}{last}"));
+        assert_eq!(
+            page.marking(&page.results()[0], Mark::Withdrawn, "a\nb"),
+            Err(PlacingError::Notice)
+        );
+    }
 }

@@ -180,3 +180,126 @@ fn lone_carriage_returns(text: &str, blocks: &[Block], regions: &[Region]) -> Op
     };
     Some(diagnostic.helped("save the page with LF or CR LF as line ending"))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn page(text: &str) -> Page {
+        Page::read(text.as_bytes().to_vec()).unwrap()
+    }
+
+    fn contents(text: &str) -> Vec<String> {
+        page(text)
+            .blocks()
+            .iter()
+            .map(|block| block.content().text().to_owned())
+            .collect()
+    }
+
+    fn rules(text: &str) -> Vec<Rule> {
+        page(text)
+            .diagnostics()
+            .iter()
+            .map(Diagnostic::rule)
+            .collect()
+    }
+
+    #[test]
+    fn blocks_are_found_wherever_markdown_allows_a_fence() {
+        assert_eq!(contents("```equilibrium\na: 1\n```\n"), ["a: 1\n"]);
+        assert_eq!(
+            contents("\u{feff}```equilibrium\r\na: 1\r\n```"),
+            ["a: 1\n"]
+        );
+        assert_eq!(
+            contents("> - ~~~~ equilibrium x\r\n>   a: 1\r\n>\r\n>     b: 2\r\n>   ~~~~\r\n"),
+            ["a: 1\n\n  b: 2\n"]
+        );
+        assert_eq!(
+            contents("1. x\n   ```equilibrium\n   a: 1\n   ```\n2. ```equilibrium\n   ```\n"),
+            ["a: 1\n", ""]
+        );
+        assert_eq!(
+            contents("   ```equilibrium\n   a: 1\n  b: 2\n   ```\n"),
+            ["a: 1\nb: 2\n"]
+        );
+    }
+
+    #[test]
+    fn what_only_looks_like_a_block_is_none() {
+        for text in [
+            "    ```equilibrium\n    a: 1\n    ```\n",
+            "````\n```equilibrium\na: 1\n```\n````\n",
+            "<!--\n```equilibrium\na: 1\n```\n-->\n",
+            "<!-- ionfolio result a -->\n~~~ equilibrium\na: 1\n~~~\n<!-- ionfolio end a -->\n",
+            "```equilibriums\n```\n",
+        ] {
+            assert!(contents(text).is_empty(), "{text}");
+        }
+    }
+
+    #[test]
+    fn a_place_in_a_quoted_block_is_the_place_in_the_page() {
+        let text = "- x\r\n\r\n  > ```equilibrium\r\n  > µ: 5 µL\r\n  > pH: 7\r\n  > ```\r\n";
+        let page = page(text);
+        let block = &page.blocks()[0];
+        let start = block.content().text().find("pH").unwrap();
+        let placed = block.content().in_page(Span::new(start, start + 2));
+        assert_eq!(placed.of(text), Some("pH"));
+        let line_column = page.line_index().line_column(placed.start());
+        assert_eq!((line_column.line, line_column.column), (5, 5));
+    }
+
+    #[test]
+    fn a_block_that_is_not_closed_is_reported_at_its_opening() {
+        for text in [
+            "```equilibrium\na: 1\n",
+            "- ```equilibrium\n  a: 1\n\ntext\n",
+            "````equilibrium\n```\n",
+        ] {
+            let page = page(text);
+            assert_eq!(rules(text), [Rule::UnclosedFence], "{text}");
+            assert!(page.diagnostics()[0].is_error() && !page.blocks()[0].is_closed());
+        }
+        assert_eq!(
+            rules("```equilibrium\na: 1\n\n```equilibrium\nb: 1\n```\n"),
+            [Rule::UnclosedFence]
+        );
+        assert_eq!(
+            rules("```text\nx\n\n```equilibrium\nb: 1\n"),
+            [Rule::UnclosedFence]
+        );
+        assert_eq!(rules("````markdown\n```equilibrium\nb: 1\n```\n````\n"), []);
+    }
+
+    #[test]
+    fn an_almost_right_word_is_asked_about() {
+        let found = page("```Equilibrum\n```\n").diagnostics()[0].clone();
+        assert_eq!(
+            (found.rule(), found.help()),
+            (Rule::FenceName, Some("did you mean `equilibrium`?"))
+        );
+        assert_eq!(rules("```yaml\n```\n```\n```\n"), []);
+    }
+
+    #[test]
+    fn lone_carriage_returns_weigh_by_where_they_stand() {
+        let severity = |text: &str| page(text).diagnostics().first().map(Diagnostic::is_error);
+        assert_eq!(severity("a\rb\n"), Some(false));
+        assert_eq!(severity("text\r```equilibrium\ra: 1\r```\r"), Some(true));
+        assert_eq!(
+            severity("a\rb\n\n```equilibrium\na: 1\rb: 2\n```\n"),
+            Some(true)
+        );
+        assert_eq!(severity("a\r\n"), None);
+    }
+
+    #[test]
+    fn bytes_that_are_no_text_are_named_by_their_place() {
+        let refused = Page::read(b"a\n\xb5L".to_vec())
+            .map(|page| page.text)
+            .unwrap_err();
+        assert_eq!(refused, PageError::NotUtf8 { offset: 2, line: 2 });
+    }
+}
