@@ -160,11 +160,9 @@ fn lone_carriage_returns(text: &str, blocks: &[Block], regions: &[Region]) -> Op
             .is_some_and(|region| region.span.start() <= at)
     };
     let hides = |at: usize| {
-        let rest = text
-            .get(at..)
-            .unwrap_or_default()
-            .trim_start_matches(['\r', ' ', '>']);
-        rest.starts_with("```") || rest.starts_with("~~~")
+        let rest = text.get(at + 1..).unwrap_or_default();
+        let line = rest.trim_start_matches([' ', '>']);
+        line.starts_with("```") || line.starts_with("~~~")
     };
     let worst = found
         .iter()

@@ -16,6 +16,20 @@ pub(super) fn fault(source: &str, offset: usize, complaint: &str, base: usize) -
     diagnostic.moved_by(base)
 }
 
+/// The diagnostic for lines that are text without a key; `source` is what they are.
+pub(super) fn line_without_key(source: &str, base: usize) -> Diagnostic {
+    let found = Found {
+        source,
+        offset: source.trim_end().len(),
+    };
+    found.no_colon().moved_by(base)
+}
+
+/// Whether after this complaint of the scanner a quotation mark or bracket is open.
+pub(super) fn leaves_open(complaint: &str) -> bool {
+    complaint.contains("flow ") || complaint.contains("end of stream")
+}
+
 /// The span of the first `:` that follows a word and is followed by neither blank nor line end, in the first line of
 /// `text`, if no colon of it is followed by a blank.
 pub(super) fn colon_without_space(text: &str) -> Option<Span> {

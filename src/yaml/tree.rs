@@ -5,7 +5,7 @@ use crate::{
     yaml::{
         Mapping, Node, Value,
         builder::{Builder, Entries, Stopped},
-        fault::fault,
+        fault::{leaves_open, line_without_key},
     },
 };
 
@@ -76,53 +76,30 @@ fn recover(
     diagnostics: &mut Vec<Diagnostic>,
 ) -> Option<Node> {
     let mut builder = Builder::new(limits);
-    let mut root = Entries::default();
-    let mut faults = Vec::new();
+    let mut recovery = Recovery::default();
     for chunk in chunks(body) {
         let source = chunk.of(body).unwrap_or_default();
-        let start = base + chunk.start();
-        match builder.read(source, start) {
-            Ok(Some(Node {
-                value: Value::Mapping(mapping),
-                ..
-            })) => {
-                for entry in mapping.entries {
-                    root.insert(entry, &mut faults);
-                }
-            }
-            Ok(Some(Node {
-                value: Value::Text(_),
-                ..
-            })) => {
-                faults.push(fault(
-                    source,
-                    source.trim_end().len(),
-                    "simple key expected",
-                    start,
-                ));
-            }
-            Ok(_) => {}
-            Err(Stopped::Scanner(error)) => faults.push(builder.fault(source, start, &error)),
-            Err(Stopped::Limit) => {
-                diagnostics.append(&mut builder.take_refusals());
-                return None;
-            }
+        let outcome = builder.read(source, base + chunk.start());
+        if let Err(Stopped::Limit) = outcome {
+            diagnostics.append(&mut builder.take_refusals());
+            return None;
         }
-        faults.append(&mut builder.take_refusals());
+        recovery.add(outcome, source, base + chunk.start(), &builder);
+        recovery.faults.append(&mut builder.take_refusals());
+        if recovery.unreadable >= MOST_FAULTS {
+            break;
+        }
     }
-    if !faults.iter().any(|fault| {
-        matches!(
-            fault.rule(),
-            Rule::YamlSyntax | Rule::YamlTab | Rule::YamlAlias
-        )
-    }) {
-        faults.push(whole);
+    if recovery.unreadable == 0 {
+        recovery.faults.push(whole);
     }
-    diagnostics.append(&mut faults);
-    let heading = root.list.first()?.key.span();
+    recovery.faults.sort_by_key(|fault| fault.span().start());
+    diagnostics.append(&mut recovery.faults);
+    let entries = recovery.entries.list;
+    let heading = entries.first()?.key.span();
     let span = Span::new(base, base + body.trim_end().len());
     let mapping = Mapping {
-        entries: root.list,
+        entries,
         heading,
         partial: true,
     };
@@ -130,6 +107,54 @@ fn recover(
         span,
         value: Value::Mapping(mapping),
     })
+}
+
+/// Lines that cannot be read, above which a text is something else than a block and further faults are noise.
+const MOST_FAULTS: usize = 20;
+
+#[derive(Default)]
+struct Recovery {
+    entries: Entries,
+    faults: Vec<Diagnostic>,
+    unreadable: usize,
+    /// Whether a quotation mark or bracket is open, so that lines without a colon may belong to it.
+    open: bool,
+}
+
+impl Recovery {
+    fn add(
+        &mut self,
+        outcome: Result<Option<Node>, Stopped>,
+        source: &str,
+        start: usize,
+        builder: &Builder,
+    ) {
+        match outcome.map(|root| root.map(|node| node.value)) {
+            Ok(Some(Value::Mapping(mapping))) => {
+                self.open = false;
+                for entry in mapping.entries {
+                    self.entries.insert(entry, &mut self.faults);
+                }
+            }
+            Ok(Some(Value::Text(_))) if !self.open => {
+                self.unreadable += 1;
+                self.faults.push(line_without_key(source, start));
+            }
+            Err(Stopped::Scanner(error)) if !self.open || begins_with_a_key(source) => {
+                self.open = leaves_open(error.info());
+                self.unreadable += 1;
+                self.faults.push(builder.fault(source, start, &error));
+            }
+            Ok(_) | Err(_) => {}
+        }
+    }
+}
+
+fn begins_with_a_key(source: &str) -> bool {
+    source
+        .lines()
+        .next()
+        .is_some_and(|line| line.contains(": ") || line.trim_end().ends_with(':'))
 }
 
 /// The stretches of the text that begin with a top-level key each. A list item, a closing bracket or a remark in the
@@ -253,6 +278,17 @@ mod tests {
             (Rule::DuplicateKey, "air"),
         ];
         assert_eq!(rules(text), expected);
+    }
+
+    #[test]
+    fn what_follows_an_open_quotation_mark_or_bracket_is_not_reported_line_by_line() {
+        assert_eq!(
+            rules("µ: 'x\ny\nz\nb: 1\nb: 2\n"),
+            [(Rule::YamlSyntax, "'"), (Rule::DuplicateKey, "b")]
+        );
+        assert_eq!(rules("µ: [x,\ny,\nb: 1\n"), [(Rule::YamlSyntax, ",")]);
+        let garbage = "a: b: c\n".repeat(1000);
+        assert_eq!(rules(&garbage).len(), MOST_FAULTS);
     }
 
     #[test]
