@@ -110,7 +110,7 @@ fn salts_are_their_acid_with_hydrogen_exchanged() {
                         expected += atoms.unwrap_or(0) * u32::from(*count);
                     }
                     Component::Ion(ion) => {
-                        known &= ion.symbol.chars().filter(|c| c.is_ascii()).count() <= 2
+                        known &= ion.symbol.chars().filter(char::is_ascii).count() <= 2;
                     }
                 }
             }
