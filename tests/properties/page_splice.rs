@@ -1,8 +1,7 @@
 //! The law of the page: what was put in and taken out again leaves every byte as it was.
 
+use ionfolio::page::{Mark, Page, Region, Written};
 use proptest::prelude::*;
-
-use crate::page::{Mark, Page, Region, Written};
 
 /// Stretches of Markdown that pages are put together from, each a whole number of lines.
 const STRETCHES: &[&str] = &[
