@@ -46,6 +46,7 @@ pub(super) fn read(
         air: gas?,
         uncertainty: mode?,
         accepted: accepted(reader, keys),
+        carbonate: reader.catalogue.ligand("carbonic acid").cloned(),
         pkw: reader.catalogue.water().cloned(),
     })
 }

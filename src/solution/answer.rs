@@ -2,7 +2,7 @@
 
 use crate::equilibrium::Certificate;
 use crate::problem::{ActivityChoice, Composition, InputId, ShortcutName};
-use crate::substance::{Form, InertIon, Ligand};
+use crate::substance::{Constant, Form, InertIon, Ligand};
 use std::sync::Arc;
 
 /// The whole answer to one statement.
@@ -38,7 +38,7 @@ pub struct Answer {
 /// Model and water at the temperature of the block.
 #[derive(Clone, Debug)]
 pub struct ModelFacts {
-    /// The model that was used; never [`ActivityChoice::Best`].
+    /// The model that was used; never `best`.
     pub activity: ActivityChoice,
     /// Why this one, where `best` was asked for.
     pub choice: Option<String>,
@@ -452,6 +452,8 @@ pub struct Comparison {
 /// Everything that is needed to compute an answer again without a library.
 #[derive(Clone, Debug, Default)]
 pub struct ConstantsUsed {
+    /// The user's own pKw, where there is one.
+    pub water: Option<Constant>,
     /// The ligands with their constants.
     pub ligands: Vec<Arc<Ligand>>,
     /// The inert ions.
