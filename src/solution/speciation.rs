@@ -44,6 +44,7 @@ pub(super) fn answer(
     Ok(Answer {
         model: solved.model_facts(),
         outcome,
+        distribution: None,
         budget,
         simulation,
         shortcuts,
