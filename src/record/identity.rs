@@ -75,7 +75,9 @@ impl NotebookId {
     /// The identity made of random bytes that the caller drew.
     #[must_use]
     pub fn of_random(bytes: [u8; 16]) -> Self {
-        Self(bytes.iter().map(|byte| format!("{byte:02x}")).collect())
+        let digit = |nibble: u8| char::from_digit(u32::from(nibble), 16);
+        let digits = bytes.iter().flat_map(|byte| [byte >> 4, byte & 15]);
+        Self(digits.filter_map(digit).collect())
     }
 }
 

@@ -100,7 +100,8 @@ impl Seen {
     }
 
     fn print(&self) -> String {
-        self.0.iter().map(|act| format!("{act}\n")).collect()
+        let lines: Vec<String> = self.0.iter().map(|act| format!("{act}\n")).collect();
+        lines.concat()
     }
 
     fn parse(text: &str) -> Result<Self, ValueFault> {

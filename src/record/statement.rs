@@ -152,11 +152,13 @@ impl Statement {
     }
 
     /// Puts attachments and uses into the order in which they are printed, each once.
-    pub(super) fn order(&mut self) {
+    #[must_use]
+    pub fn in_order(mut self) -> Self {
         self.attachments.sort();
         self.attachments.dedup();
         self.uses.sort();
         self.uses.dedup();
+        self
     }
 }
 
@@ -322,7 +324,6 @@ pub(super) mod tests {
                 fault
             }
         );
-        twice.order();
-        assert_eq!(twice, full());
+        assert_eq!(twice.in_order(), full());
     }
 }

@@ -1,0 +1,369 @@
+//! Verification of one result: its bytes, its acts, their signatures, and what the policy asks.
+//!
+//! A key's dates are judged by the act's own time. That time is the signer's claim, unless a later witness bounds it.
+//! Time stamps by a third party (RFC 3161) would be checked here, beside the signature of each act.
+
+use std::fmt;
+
+use chrono::{DateTime, FixedOffset};
+
+use super::act::{Act, ActError, Meaning, SignedAct};
+use super::appearance::disguises;
+use super::digest::Digest;
+use super::fault::Fault;
+use super::finding::{Finding, Part, Place, Severity};
+use super::identity::{NotebookId, NotebookPath};
+use super::lines::LineError;
+use super::policy::{Person, Policy};
+use super::roster::{Roster, Standing};
+use super::statement::Statement;
+
+/// What stands in the page and beside it, for one result.
+#[derive(Clone, Copy)]
+pub struct Parts<'a> {
+    /// The notebook in which it stands.
+    pub notebook: &'a NotebookId,
+    /// The page on which it stands, from the notebook's folder.
+    pub page: &'a str,
+    /// The label under which it stands.
+    pub label: &'a str,
+    /// The block's content; none if no block has the label.
+    pub question: Option<&'a [u8]>,
+    /// The answer.
+    pub answer: &'a [u8],
+    /// The content of the `record` fence.
+    pub record: Option<&'a [u8]>,
+    /// The contents of the `act` fences, in their order.
+    pub acts: &'a [&'a [u8]],
+    /// The bytes of a file of the notebook, if it can be read.
+    pub attachment: &'a dyn Fn(&NotebookPath) -> Option<Vec<u8>>,
+    /// The notebook's defaults that bear on the block, as they were digested when sealing.
+    pub defaults: Option<&'a [u8]>,
+}
+
+impl fmt::Debug for Parts<'_> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "Parts({}#{})", self.page, self.label)
+    }
+}
+
+/// Against what a result is judged.
+#[derive(Clone, Copy, Debug)]
+pub struct Authority<'a> {
+    /// Who may sign.
+    pub roster: &'a Roster,
+    /// What is asked of a record.
+    pub policy: &'a Policy,
+    /// The people of the laboratory.
+    pub people: &'a [Person],
+    /// The verifier's time, for due dates.
+    pub now: DateTime<FixedOffset>,
+}
+
+/// A sealed result, as read: what is claimed, and who did what with it.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Record {
+    /// What is claimed.
+    pub statement: Statement,
+    /// The digest of the record.
+    pub digest: Digest,
+    /// The acts, in their order.
+    pub acts: Vec<SignedAct>,
+}
+
+/// Proof that verification found no failure. It is made by [`verify`] alone.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Verified<T>(T);
+
+impl<T> Verified<T> {
+    /// What was verified.
+    pub const fn get(&self) -> &T {
+        &self.0
+    }
+}
+
+/// What verification of one result gave.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Verification {
+    /// The result as read, whether it holds or not.
+    pub record: Option<Record>,
+    /// The result, if no finding is a failure.
+    pub verified: Option<Verified<Record>>,
+    /// Everything found, in the order of the page.
+    pub findings: Vec<Finding>,
+}
+
+/// Verifies one result. Everything is checked that can be, whatever is found before.
+#[must_use]
+pub fn verify(parts: &Parts<'_>, authority: &Authority<'_>) -> Verification {
+    let mut check = Check {
+        parts,
+        authority,
+        findings: Vec::new(),
+    };
+    let statement = check.statement();
+    let acts = check.acts(statement.as_ref());
+    let record = statement.map(|statement| Record {
+        digest: Digest::of_lines(parts.record.unwrap_or_default()),
+        statement,
+        acts,
+    });
+    if let Some(record) = &record {
+        check.order_of_acts(record);
+        check.policy(record);
+    }
+    let failed = |finding: &Finding| finding.severity() == Severity::Failure;
+    let sound = !check.findings.iter().any(failed);
+    Verification {
+        verified: record.clone().filter(|_| sound).map(Verified),
+        record,
+        findings: check.findings,
+    }
+}
+
+struct Check<'a> {
+    parts: &'a Parts<'a>,
+    authority: &'a Authority<'a>,
+    findings: Vec<Finding>,
+}
+
+impl Check<'_> {
+    fn find(&mut self, part: Part, fault: Fault) {
+        let place = Place {
+            file: self.parts.page.to_owned(),
+            label: Some(self.parts.label.to_owned()),
+            part,
+        };
+        self.findings.push(Finding { place, fault });
+    }
+
+    fn statement(&mut self) -> Option<Statement> {
+        let Some(bytes) = self.parts.record else {
+            if !self.parts.acts.is_empty() {
+                self.find(Part::Act(1), Fault::ActWithoutRecord);
+            }
+            return None;
+        };
+        match Statement::parse(bytes) {
+            Ok(statement) => {
+                self.place(&statement);
+                self.texts(&statement);
+                self.attachments(&statement);
+                Some(statement)
+            }
+            Err(error) => {
+                self.find(Part::Record, unreadable(error, Fault::RecordUnreadable));
+                None
+            }
+        }
+    }
+
+    fn place(&mut self, statement: &Statement) {
+        if statement.notebook != *self.parts.notebook {
+            let signed = statement.notebook.clone();
+            self.find(Part::Record, Fault::WrongNotebook { signed });
+        }
+        if statement.label.as_str() != self.parts.label {
+            let signed = statement.label.clone();
+            self.find(Part::Record, Fault::WrongLabel { signed });
+        }
+        if statement.page.as_str() != self.parts.page {
+            let from = statement.page.clone();
+            self.find(Part::Record, Fault::MovedPage { from });
+        }
+    }
+
+    fn texts(&mut self, statement: &Statement) {
+        let question = self.parts.question.unwrap_or_default();
+        let texts = [
+            (
+                Part::Question,
+                question,
+                statement.question,
+                Fault::QuestionChanged,
+            ),
+            (
+                Part::Answer,
+                self.parts.answer,
+                statement.answer,
+                Fault::AnswerChanged,
+            ),
+        ];
+        for (part, bytes, digest, changed) in texts {
+            if Digest::of_lines(bytes) != digest {
+                self.find(part.clone(), changed);
+            }
+            for disguise in disguises(bytes) {
+                self.find(part.clone(), Fault::LooksDifferent(disguise));
+            }
+        }
+        if statement.defaults != self.parts.defaults.map(Digest::of_lines) {
+            self.find(Part::Question, Fault::DefaultsChanged);
+        }
+    }
+
+    fn attachments(&mut self, statement: &Statement) {
+        for attachment in &statement.attachments {
+            let part = Part::Attachment(attachment.name.clone());
+            match (self.parts.attachment)(&attachment.name) {
+                None => self.find(part, Fault::AttachmentMissing),
+                Some(bytes) if !attachment.digest.agrees_with_file(&bytes) => {
+                    self.find(part, Fault::AttachmentChanged);
+                }
+                Some(_) => {}
+            }
+        }
+    }
+
+    fn acts(&mut self, statement: Option<&Statement>) -> Vec<SignedAct> {
+        let mut acts = Vec::new();
+        for (bytes, place) in self.parts.acts.iter().zip(1..) {
+            match SignedAct::parse(bytes) {
+                Ok(signed) => {
+                    self.act(Part::Act(place), &signed, statement.is_some());
+                    acts.push(signed);
+                }
+                Err(ActError::Lines(error)) => {
+                    let fault = unreadable(error, |error| Fault::ActUnreadable(error.into()));
+                    self.find(Part::Act(place), fault);
+                }
+                Err(error) => self.find(Part::Act(place), Fault::ActUnreadable(error)),
+            }
+        }
+        if self.parts.record.is_some() && self.parts.acts.is_empty() {
+            self.find(Part::Record, Fault::RecordWithoutAct);
+        }
+        acts
+    }
+
+    fn act(&mut self, part: Part, signed: &SignedAct, readable: bool) {
+        let act = signed.act();
+        if let Some(record) = self.parts.record
+            && readable
+            && act.record != Digest::of_lines(record)
+        {
+            let signer = act.signer.clone();
+            self.find(Part::Record, Fault::RecordChanged { signer });
+        }
+        for fault in signature_faults(signed, self.authority.roster) {
+            self.find(part.clone(), fault);
+        }
+        if act.time > self.authority.now {
+            self.find(part.clone(), Fault::TimeToCome { time: act.time });
+        }
+        self.person(part, act);
+    }
+
+    fn person(&mut self, part: Part, act: &Act) {
+        let Authority { policy, people, .. } = *self.authority;
+        if !policy.authorises(people, &act.signer, act.meaning) {
+            let signer = act.signer.clone();
+            let meaning = act.meaning;
+            self.find(part.clone(), Fault::NotAuthorised { signer, meaning });
+        }
+        let mut known = people.iter().filter(|person| person.signer == act.signer);
+        if let Some(person) = known.next()
+            && person.name != act.name
+        {
+            let (printed, given) = (act.name.clone(), person.name.clone());
+            self.find(part, Fault::NameDiffers { printed, given });
+        }
+    }
+
+    fn order_of_acts(&mut self, record: &Record) {
+        for (signed, place) in record.acts.iter().zip(1..) {
+            let (act, part) = (signed.act(), Part::Act(place));
+            let found = act.meaning;
+            match (place, found) {
+                (1, Meaning::Performed) => {}
+                (1, _) => self.find(part.clone(), Fault::FirstActNotPerformed { found }),
+                (_, Meaning::Performed) => self.find(part.clone(), Fault::ActOutOfPlace { found }),
+                _ if !found.is_of_a_page() => {
+                    self.find(part.clone(), Fault::ActOutOfPlace { found });
+                }
+                _ => {}
+            }
+            let before = record.acts.iter().take(place - 1).map(|a| a.act().time);
+            if let Some(before) = before.max().filter(|before| act.time < *before) {
+                let time = act.time;
+                self.find(part.clone(), Fault::ClockRanBack { time, before });
+            }
+            let signer = act.signer.clone();
+            match found {
+                Meaning::Rejected => self.find(part, Fault::Rejected { signer }),
+                Meaning::Withdrawn => self.find(part, Fault::Withdrawn { signer }),
+                _ => {}
+            }
+        }
+    }
+
+    fn policy(&mut self, record: &Record) {
+        let Authority { policy, now, .. } = *self.authority;
+        let Some(performed) = record.acts.first().map(SignedAct::act) else {
+            return;
+        };
+        for (signed, place) in record.acts.iter().zip(1..) {
+            let act = signed.act();
+            if policy.forbids_own(&performed.signer, &act.signer, act.meaning) {
+                let (signer, meaning) = (act.signer.clone(), act.meaning);
+                self.find(Part::Act(place), Fault::OwnReview { signer, meaning });
+            }
+        }
+        let ended = record
+            .acts
+            .iter()
+            .any(|act| act.act().meaning == Meaning::Withdrawn);
+        for meaning in policy.required.iter().copied().filter(|_| !ended) {
+            let fulfils = |act: &Act| {
+                act.meaning == meaning
+                    && !policy.forbids_own(&performed.signer, &act.signer, meaning)
+                    && policy.authorises(self.authority.people, &act.signer, meaning)
+            };
+            if record.acts.iter().any(|act| fulfils(act.act())) {
+                continue;
+            }
+            let late = policy
+                .due_days
+                .map(|due| (now - performed.time).num_days() - i64::from(due));
+            self.find(
+                Part::Whole,
+                match late {
+                    Some(days) if days > 0 => Fault::Overdue { meaning, days },
+                    _ => Fault::RequiredActMissing { meaning },
+                },
+            );
+        }
+    }
+}
+
+/// What is wrong with the signature of an act, by the roster and the act's own time.
+pub(super) fn signature_faults(signed: &SignedAct, roster: &Roster) -> Vec<Fault> {
+    let act = signed.act();
+    let signer = act.signer.clone();
+    let key = match signed.signature().public_key() {
+        Ok(key) => key,
+        Err(fault) => return vec![Fault::SignatureWrong(fault)],
+    };
+    let mut faults = Vec::new();
+    if let Err(fault) = signed.signature().verify(act.print().as_bytes(), &key) {
+        faults.push(Fault::SignatureWrong(fault));
+    }
+    match roster.standing(&signer, &key, act.time) {
+        Standing::Valid => {}
+        Standing::UnknownSigner => faults.push(Fault::SignerNotOnRoster { signer }),
+        Standing::UnknownKey => faults.push(Fault::KeyNotOnRoster {
+            signer,
+            fingerprint: key.fingerprint(),
+        }),
+        Standing::NotYet(from) => faults.push(Fault::KeyOutsideDates { signer, from }),
+        Standing::Retired(at) => faults.push(Fault::KeyRetired { signer, at }),
+    }
+    faults
+}
+
+fn unreadable(error: LineError, otherwise: impl Fn(LineError) -> Fault) -> Fault {
+    match error {
+        LineError::Newer { version, .. } => Fault::NewerVersion { version },
+        error => otherwise(error),
+    }
+}
