@@ -1,0 +1,1 @@
+//! Answers made by hand for the tests of rendering.
