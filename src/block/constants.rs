@@ -45,6 +45,15 @@ pub(super) fn read(reader: &mut Reader<'_>, node: &Node) {
     }
 }
 
+/// Reads the text of a constants file, or of an answer's `constants` block: a list of acid families, ions and forms.
+pub fn read_constants(text: &str, diagnostics: &mut Vec<Diagnostic>) -> StoredConstants {
+    let root = yaml::read(text, Limits::FILE, diagnostics);
+    match root.as_ref().and_then(|root| root.as_list(diagnostics)) {
+        Some(items) => entries(items, diagnostics),
+        None => StoredConstants::default(),
+    }
+}
+
 /// The entries of a constants list: acid families, ions, forms.
 pub(super) fn entries(items: &[Node], diagnostics: &mut Vec<Diagnostic>) -> StoredConstants {
     let mut stored = StoredConstants::default();

@@ -97,26 +97,27 @@ impl Defaults {
             }
         }
         if let Some(scalar) = keys.text("rounding", diagnostics) {
-            defaults.set_rounding(scalar, diagnostics);
+            if !defaults.set_rounding(scalar.text()) {
+                diagnostics.push(
+                    Diagnostic::error(
+                        Rule::UnknownChoice,
+                        scalar.span(),
+                        format!("`{}` is no rounding rule", scalar.text()),
+                    )
+                    .expecting("`half-even` or `half-up`"),
+                );
+            }
         }
         keys.finish(diagnostics);
         defaults
     }
 
-    /// Sets the rounding rule by its name.
-    pub fn set_rounding(&mut self, scalar: &Scalar, diagnostics: &mut Vec<Diagnostic>) {
+    /// Sets the rounding rule by its name; false if there is none of that name.
+    pub fn set_rounding(&mut self, name: &str) -> bool {
         let rules = [RoundingRule::HalfEven, RoundingRule::HalfUp];
-        match rules.into_iter().find(|rule| rule.name() == scalar.text()) {
-            Some(rule) => self.rounding = rule,
-            None => diagnostics.push(
-                Diagnostic::error(
-                    Rule::UnknownChoice,
-                    scalar.span(),
-                    format!("`{}` is no rounding rule", scalar.text()),
-                )
-                .expecting("`half-even` or `half-up`"),
-            ),
-        }
+        let found = rules.into_iter().find(|rule| rule.name() == name);
+        self.rounding = found.unwrap_or(self.rounding);
+        found.is_some()
     }
 
     /// One line for each default, in a fixed order and form: what a record keeps so that a result can be computed again when the settings have

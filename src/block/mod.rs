@@ -21,6 +21,7 @@ mod remarks;
 mod source;
 mod titration;
 
+pub use constants::read_constants;
 pub use context::{Attachments, Context, SolutionError, Solutions};
 pub use defaults::Defaults;
 pub use keys::{KEYS, KeyEntry};
