@@ -84,6 +84,12 @@ pub enum ComputeError {
     /// The page or a plot was not written.
     #[error("{0}")]
     Replace(#[from] ReplaceError),
+    /// It is larger than what is read.
+    #[error("it is larger than {limit} bytes, the largest page that is read")]
+    TooLarge {
+        /// The limit in bytes.
+        limit: u64,
+    },
     /// A result does not fit into the page.
     #[error("the result of `{label}` does not go into the page: {reason}")]
     Placing {

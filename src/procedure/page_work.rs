@@ -133,6 +133,22 @@ impl PageWork {
         work
     }
 
+    /// Solves and renders one statement at a desk; the defaults are not yet among its constants.
+    ///
+    /// # Errors
+    /// Why not, in a sentence part.
+    pub(super) fn finish(
+        desk: &Desk,
+        name: &str,
+        statement: &Statement,
+    ) -> Result<Rendered, String> {
+        match rendered(desk, name, statement) {
+            Ok((_, rendered, _)) => Ok(rendered),
+            Err(Failure::Unsolvable(error)) => Err(error.to_string()),
+            Err(Failure::Report(message)) => Err(message),
+        }
+    }
+
     /// Whether anything is an error.
     pub fn is_faulty(&self) -> bool {
         self.faults.iter().any(Diagnostic::is_error)
@@ -181,13 +197,22 @@ fn finished(
     name: &str,
     statement: &Statement,
 ) -> Result<(Answer, Rendered, Template), Failure> {
+    let (answer, mut rendered, template) = rendered(desk, name, statement)?;
+    rendered.markdown = with_defaults(&rendered.markdown, &desk.defaults.lines());
+    Ok((answer, rendered, template))
+}
+
+fn rendered(
+    desk: &Desk,
+    name: &str,
+    statement: &Statement,
+) -> Result<(Answer, Rendered, Template), Failure> {
     let answer = solution::solve(statement).map_err(Failure::Unsolvable)?;
     let template = desk
         .template(statement.problem.task())
         .map_err(|error| Failure::Report(error.to_string()))?;
-    let mut rendered = report::render(name, statement, &answer, &template)
+    let rendered = report::render(name, statement, &answer, &template)
         .map_err(|error| Failure::Report(error.to_string()))?;
-    rendered.markdown = with_defaults(&rendered.markdown, &desk.defaults.lines());
     Ok((answer, rendered, template))
 }
 
@@ -198,7 +223,7 @@ const CONSTANTS_FENCE: &str = "```constants\n";
 const DEFAULT_LINE: &str = "# where the block is silent: ";
 
 /// The answer with the defaults that held, as remarks in its `constants` block: with them it can be computed again when the settings have changed.
-fn with_defaults(markdown: &str, lines: &[String]) -> String {
+pub(super) fn with_defaults(markdown: &str, lines: &[String]) -> String {
     let remarks: String = lines
         .iter()
         .map(|line| format!("{DEFAULT_LINE}{line}\n"))

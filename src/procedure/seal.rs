@@ -6,6 +6,8 @@
 use crate::notebook::{Lock, LockError, ReplaceError, SETTINGS_FILE, create, read_page, replace};
 use crate::page::{Edit, PAGE_LIMIT, Page, Written};
 use crate::procedure::compute::{ComputeError, write_plots};
+use crate::procedure::countersign::unescaped;
+use crate::procedure::hand::{Hand, HandError};
 use crate::procedure::page_work::{BlockWork, PageWork};
 use crate::procedure::records::{Records, RecordsError};
 use crate::procedure::surroundings::Surroundings;
@@ -82,14 +84,9 @@ pub enum SealError {
         /// Why.
         error: record::SealError,
     },
-    /// The roster does not let this key sign for this signer.
-    #[error("the roster does not let this key sign for {signer}: {standing}")]
-    NotOnRoster {
-        /// The signer.
-        signer: SignerName,
-        /// How the key stands.
-        standing: &'static str,
-    },
+    /// The signer cannot sign here.
+    #[error(transparent)]
+    Hand(#[from] HandError),
     /// A name does not fit into a record.
     #[error("{what} {text:?} {fault}")]
     Name {
@@ -119,14 +116,6 @@ pub enum SealError {
     /// An attachment disappeared, or the program's own file cannot be read.
     #[error("{0}")]
     Missing(String),
-    /// The register was not written.
-    #[error("{path}: {error}", path = .path.display())]
-    Register {
-        /// The register.
-        path: PathBuf,
-        /// Why.
-        error: ReplaceError,
-    },
 }
 
 /// Seals the drafts of a page.
@@ -178,7 +167,18 @@ pub fn seal_page(
         return Ok(sealed);
     }
     let (signer, key) = key_of(surroundings, request.signer.as_ref())?;
-    let mut session = Session::begin(&desk, records, surroundings, (signer, key), request)?;
+    let hand = Hand::of(
+        &desk,
+        records,
+        surroundings,
+        (signer, key),
+        request.printed.as_deref(),
+    )?;
+    let mut session = Session {
+        desk: &desk,
+        hand,
+        done: BTreeMap::new(),
+    };
     let mut edits = Vec::new();
     for item in in_order(&work, open) {
         edits.push(session.seal(&work, item)?);
@@ -188,9 +188,9 @@ pub fn seal_page(
             .blocks
             .push(told(item, session.done.contains_key(&item.label)));
     }
-    sealed.signer = Some(session.signer.clone());
-    sealed.on_roster = session.on_roster;
-    sealed.register = session.write_register()?;
+    sealed.signer = Some(session.hand.signer.clone());
+    sealed.on_roster = session.hand.on_roster;
+    sealed.register = session.hand.write_register()?;
     for item in wanted
         .iter()
         .filter(|item| session.done.contains_key(&item.label))
@@ -264,84 +264,12 @@ fn in_order<'w>(work: &PageWork, open: Vec<&'w BlockWork>) -> Vec<&'w BlockWork>
 /// One run of sealing: the register grows, and what was sealed may be used by what follows.
 struct Session<'d> {
     desk: &'d Desk,
-    records: Records,
-    surroundings: &'d Surroundings<'d>,
-    signer: SignerName,
-    printed: TextLine,
-    key: KeyFile,
-    on_roster: bool,
-    addition: String,
+    hand: Hand<'d>,
     /// Digest of the record of each label sealed in this run.
     done: BTreeMap<String, Digest>,
 }
 
-impl<'d> Session<'d> {
-    fn begin(
-        desk: &'d Desk,
-        mut records: Records,
-        surroundings: &'d Surroundings<'d>,
-        (signer, key): (SignerName, KeyFile),
-        request: &SealRequest,
-    ) -> Result<Self, SealError> {
-        let offset = desk
-            .notebook
-            .as_ref()
-            .map_or(0, |notebook| notebook.offset_minutes);
-        let now = surroundings.clock.now(offset);
-        let public = record::Signer::public_key(&key);
-        let standing = records.roster.standing(&signer, public, now);
-        let on_roster = standing == Standing::Valid;
-        match standing {
-            Standing::Valid => {}
-            // Nobody has enrolled the signer yet; the signature is made, and everybody is told.
-            Standing::UnknownSigner => {
-                let from = now - chrono::TimeDelta::seconds(1);
-                records
-                    .roster
-                    .enrol(signer.clone(), public.clone(), from)
-                    .map_err(|_taken| SealError::NotOnRoster {
-                        signer: signer.clone(),
-                        standing: "the key belongs to somebody else",
-                    })?;
-            }
-            Standing::UnknownKey => {
-                return Err(SealError::NotOnRoster {
-                    signer,
-                    standing: "another key is enrolled",
-                });
-            }
-            Standing::NotYet(_) => {
-                return Err(SealError::NotOnRoster {
-                    signer,
-                    standing: "its dates have not begun",
-                });
-            }
-            Standing::Retired(_) => {
-                return Err(SealError::NotOnRoster {
-                    signer,
-                    standing: "it is retired",
-                });
-            }
-        }
-        let printed = match request.printed.as_deref().map(TextLine::new) {
-            Some(Ok(printed)) => printed,
-            _ => records
-                .printed_name(&signer)
-                .ok_or_else(|| SealError::Missing("the signer has no printed name".to_owned()))?,
-        };
-        Ok(Self {
-            desk,
-            records,
-            surroundings,
-            signer,
-            printed,
-            key,
-            on_roster,
-            addition: String::new(),
-            done: BTreeMap::new(),
-        })
-    }
-
+impl Session<'_> {
     /// The edit that puts a sealed result into the page.
     fn seal(&mut self, work: &PageWork, item: &BlockWork) -> Result<Edit, SealError> {
         let block = work.block(item);
@@ -361,28 +289,12 @@ impl<'d> Session<'d> {
                     question: question.as_bytes(),
                     answer: rendered.markdown.as_bytes(),
                 };
-                let offset = self
-                    .desk
-                    .notebook
-                    .as_ref()
-                    .map_or(0, |notebook| notebook.offset_minutes);
-                let signing = Signing {
-                    signer: &self.signer,
-                    name: &self.printed,
-                    time: self.surroundings.clock.now(offset),
-                    note: None,
-                    registers: &self.records.registers,
-                    roster: &self.records.roster,
-                    policy: &self.records.policy,
-                    people: &self.records.people,
-                    key: &self.key,
-                };
+                let signing = self.hand.signing(None);
                 let sealed = record::seal(&draft, &signing).map_err(|error| SealError::Record {
                     label: item.label.clone(),
                     error,
                 })?;
-                self.addition.push_str(&sealed.register_addition);
-                self.register(sealed.entry);
+                self.hand.take(sealed.entry, &sealed.register_addition);
                 (sealed.record, sealed.act.print(), sealed.digest)
             }
         };
@@ -408,10 +320,11 @@ impl<'d> Session<'d> {
     ) -> Option<(String, String, Digest)> {
         let rendered = item.rendered.as_ref()?;
         let own = self
+            .hand
             .records
             .registers
             .iter()
-            .find(|register| *register.signer() == self.signer)?;
+            .find(|register| *register.signer() == self.hand.signer)?;
         let entry = own.entries().iter().rev().find(|entry| {
             Statement::parse(entry.record.as_bytes()).is_ok_and(|statement| {
                 entry.act.act().meaning == record::Meaning::Performed
@@ -428,41 +341,6 @@ impl<'d> Session<'d> {
                 .is_some_and(|fence| Digest::of_lines(fence.content.text().as_bytes()) == digest)
         });
         (!in_page).then(|| (entry.record.clone(), entry.act.print(), digest))
-    }
-
-    fn register(&mut self, entry: record::Entry) {
-        let at = self
-            .records
-            .registers
-            .iter()
-            .position(|register| *register.signer() == self.signer);
-        let before = match at {
-            Some(at) => self.records.registers.remove(at),
-            None => Register::empty(self.signer.clone()),
-        };
-        self.records.registers.push(before.with(entry));
-    }
-
-    fn write_register(&self) -> Result<Option<PathBuf>, SealError> {
-        if self.addition.is_empty() {
-            return Ok(None);
-        }
-        let folder = &self.records.register_folder;
-        let path = folder.join(format!("{}.md", self.signer));
-        let failed = |error| SealError::Register {
-            path: path.clone(),
-            error,
-        };
-        fs::create_dir_all(folder).map_err(|error| failed(ReplaceError::System(error)))?;
-        match fs::read(&path) {
-            Ok(before) => {
-                let mut after = before.clone();
-                after.extend_from_slice(self.addition.as_bytes());
-                replace(&path, &before, &after).map_err(failed)?;
-            }
-            Err(_absent) => create(&path, self.addition.as_bytes()).map_err(failed)?,
-        }
-        Ok(Some(path))
     }
 
     fn statement(
@@ -484,7 +362,7 @@ impl<'d> Session<'d> {
         } else {
             template.name().to_owned()
         };
-        let program = self.surroundings.program;
+        let program = self.hand.surroundings.program;
         let program_digest = program.digest.ok_or_else(|| {
             SealError::Missing(
                 "the program's own file cannot be read, so its digest is not known".to_owned(),
@@ -498,7 +376,7 @@ impl<'d> Session<'d> {
             .map(|line| format!("{line}\n"))
             .collect();
         Ok(Statement {
-            notebook: self.records.identity.clone(),
+            notebook: self.hand.records.identity.clone(),
             page: named("the page", &work.name, NotebookPath::new)?,
             label: named("the label", &item.label, Label::new)?,
             supersedes: self.supersession(work, item)?,
@@ -541,12 +419,14 @@ impl<'d> Session<'d> {
             .notice()
             .and_then(|span| span.of(work.page.text()))
             .unwrap_or_default();
-        let reason = notice
-            .rsplit_once("Reason: ")
-            .map_or("not stated", |(_, reason)| reason.trim());
+        let reason = unescaped(
+            notice
+                .rsplit_once("Reason: ")
+                .map_or("not stated", |(_, reason)| reason.trim()),
+        );
         Ok(Some(Supersession {
             replaced: Named::new(named("the label", &item.label, Label::new)?, digest),
-            reason: named("the reason", reason, TextLine::new)?,
+            reason: named("the reason", &reason, TextLine::new)?,
         }))
     }
 

@@ -24,8 +24,6 @@ pub trait Entropy: std::fmt::Debug {
 pub trait Keys: std::fmt::Debug {
     /// The folder of the user's own keys made by this program.
     fn folder(&self) -> Option<PathBuf>;
-    /// Other private keys of the user, such as those in `~/.ssh`.
-    fn others(&self) -> Vec<PathBuf>;
     /// Asks for the passphrase of a key; `None` where nobody can be asked.
     fn passphrase(&self, key: &str) -> Option<Zeroizing<String>>;
 }
@@ -35,7 +33,7 @@ pub trait Keys: std::fmt::Debug {
 pub struct Program {
     /// Name and version: `ionfolio 0.1.0`.
     pub name: String,
-    /// The bytes of the program's file, from which its digest is made; empty where they cannot be read.
+    /// The digest of the program's file, where it can be read.
     pub digest: Option<crate::record::Digest>,
 }
 
@@ -50,4 +48,60 @@ pub struct Surroundings<'a> {
     pub keys: &'a dyn Keys,
     /// The program.
     pub program: &'a Program,
+}
+
+/// The machine as it is.
+#[derive(Clone, Copy, Debug)]
+pub struct System;
+
+impl Clock for System {
+    #[expect(clippy::disallowed_methods, reason = "this is the clock's door")]
+    fn now(&self, offset_minutes: i32) -> DateTime<FixedOffset> {
+        let now = chrono::Utc::now();
+        match FixedOffset::east_opt(offset_minutes * 60) {
+            Some(offset) => now.with_timezone(&offset),
+            None => now.fixed_offset(),
+        }
+    }
+}
+
+impl Entropy for System {
+    fn fill(&self, bytes: &mut [u8]) -> Result<(), String> {
+        getrandom::fill(bytes).map_err(|error| error.to_string())
+    }
+}
+
+impl Keys for System {
+    #[expect(
+        clippy::disallowed_methods,
+        reason = "this is the door to the user's folders"
+    )]
+    fn folder(&self) -> Option<PathBuf> {
+        let set = |name: &str| std::env::var(name).ok().filter(|value| !value.is_empty());
+        let configuration = set("XDG_CONFIG_HOME")
+            .or_else(|| set("APPDATA"))
+            .map(PathBuf::from)
+            .or_else(|| set("HOME").map(|home| PathBuf::from(home).join(".config")))?;
+        Some(configuration.join("ionfolio").join("keys"))
+    }
+
+    fn passphrase(&self, key: &str) -> Option<Zeroizing<String>> {
+        if !std::io::IsTerminal::is_terminal(&std::io::stdin()) {
+            return None;
+        }
+        rpassword::prompt_password(format!("Passphrase of {key}: "))
+            .ok()
+            .map(Zeroizing::new)
+    }
+}
+
+impl Program {
+    /// The running program with the digest of its own file.
+    pub fn running() -> Self {
+        let bytes = std::env::current_exe().and_then(std::fs::read).ok();
+        Self {
+            name: format!("ionfolio {}", env!("CARGO_PKG_VERSION")),
+            digest: bytes.map(|bytes| crate::record::Digest::of_file(&bytes)),
+        }
+    }
 }
