@@ -64,6 +64,15 @@ pub enum RegisterFault {
     },
 }
 
+impl RegisterFault {
+    /// The line that it is about.
+    pub const fn line(&self) -> usize {
+        match self {
+            Self::Act { line, .. } | Self::Seen { line, .. } | Self::Text { line } => *line,
+        }
+    }
+}
+
 /// Number and previous acts of the act to come.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Next {
