@@ -17,6 +17,8 @@ mod remedy;
 mod roster;
 mod sealing;
 mod signature;
+#[cfg(test)]
+mod specimen;
 mod statement;
 mod succession;
 mod verification;

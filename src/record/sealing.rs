@@ -281,3 +281,107 @@ impl From<SignatureFault> for SealError {
         Self::Signing(fault.into())
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::specimen::{Laboratory, names, page, statement};
+
+    const FIRST: &str = "2026-11-03T10:12:45+01:00";
+    const SECOND: &str = "2026-11-04T09:00:00+01:00";
+
+    #[test]
+    fn a_countersigned_result_verifies_and_fulfils_the_policy() {
+        let mut laboratory = Laboratory::new();
+        laboratory.policy.required.insert(Meaning::Reviewed);
+        let sealed = laboratory.seal(&statement(), "analyst", FIRST);
+        let first = laboratory.verify(&page(&[&sealed]));
+        assert_eq!(names(&first.findings), ["required-act-missing"]);
+        let verified = first.verified.unwrap();
+        let reviewed = laboratory
+            .try_countersign(&verified, Meaning::Reviewed, ("reviewer", SECOND))
+            .unwrap();
+        laboratory.keep(&reviewed);
+        let both = laboratory.verify(&page(&[&sealed, &reviewed]));
+        assert_eq!(both.findings, []);
+        let again = laboratory.try_countersign(
+            &both.verified.unwrap(),
+            Meaning::Reviewed,
+            ("reviewer", SECOND),
+        );
+        assert!(matches!(again, Err(SealError::Twice { .. })), "{again:?}");
+    }
+
+    #[test]
+    fn own_review_is_refused_and_found_where_it_was_made() {
+        let mut laboratory = Laboratory::new();
+        let sealed = laboratory.seal(&statement(), "analyst", FIRST);
+        let verified = laboratory.verify(&page(&[&sealed])).verified.unwrap();
+        let own = |laboratory: &Laboratory| {
+            laboratory.try_countersign(&verified, Meaning::Reviewed, ("analyst", SECOND))
+        };
+        let refused = own(&laboratory);
+        let expected = matches!(refused, Err(SealError::NotAllowed(Fault::OwnReview { .. })));
+        assert!(expected, "{refused:?}");
+        laboratory.policy.own_review = true;
+        let reviewed = own(&laboratory).unwrap();
+        laboratory.policy.own_review = false;
+        let found = laboratory.verify(&page(&[&sealed, &reviewed])).findings;
+        assert_eq!(names(&found), ["own-review"]);
+    }
+
+    #[test]
+    fn nothing_is_signed_against_clock_roster_or_texts() {
+        let mut laboratory = Laboratory::new();
+        laboratory.seal(&statement(), "analyst", SECOND);
+        let early = laboratory.try_seal(&statement(), "reviewer", FIRST);
+        assert!(
+            matches!(early, Err(SealError::ClockRanBack { .. })),
+            "{early:?}"
+        );
+        let stranger = laboratory.try_seal(&statement(), "stranger", SECOND);
+        let expected = matches!(
+            stranger,
+            Err(SealError::NotAllowed(Fault::SignerNotOnRoster { .. }))
+        );
+        assert!(expected, "{stranger:?}");
+        let mut other = statement();
+        other.answer = other.question;
+        let refused = laboratory.try_seal(&other, "analyst", SECOND);
+        assert!(
+            matches!(refused, Err(SealError::OtherAnswer)),
+            "{refused:?}"
+        );
+    }
+
+    #[test]
+    fn a_text_in_disguise_is_not_sealed() {
+        let mut laboratory = Laboratory::new();
+        laboratory.seal(&statement(), "analyst", FIRST);
+        let question = "note: 7.2\u{200b}0\n".as_bytes();
+        let mut statement = statement();
+        statement.question = Digest::of_lines(question);
+        let draft = Draft {
+            statement: &statement,
+            question,
+            answer: crate::record::specimen::ANSWER,
+        };
+        let refused = laboratory.signing("analyst", SECOND, |signing| seal(&draft, signing));
+        assert!(
+            matches!(refused, Err(SealError::QuestionLooksDifferent(_))),
+            "{refused:?}"
+        );
+    }
+
+    #[test]
+    fn acts_are_numbered_and_chained() {
+        let mut laboratory = Laboratory::new();
+        let first = laboratory.seal(&statement(), "analyst", FIRST);
+        let second = laboratory.seal(&statement(), "analyst", SECOND);
+        assert_eq!((first.act.act().number, second.act.act().number), (1, 2));
+        assert_eq!(second.act.act().previous, [first.act.digest()]);
+        let reviewers = laboratory.seal(&statement(), "reviewer", SECOND);
+        assert_eq!(reviewers.entry.seen.acts().len(), 1);
+        assert_eq!(reviewers.entry.seen.acts()[0].digest, second.act.digest());
+    }
+}

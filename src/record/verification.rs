@@ -367,3 +367,174 @@ fn unreadable(error: LineError, otherwise: impl Fn(LineError) -> Fault) -> Fault
         error => otherwise(error),
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::finding::Severity;
+    use crate::record::signature::Signer as _;
+    use crate::record::specimen::{
+        ANSWER, Laboratory, Page, key, name, names, page, statement, time,
+    };
+
+    const AT: &str = "2026-11-03T10:12:45+01:00";
+
+    fn found(change: impl FnOnce(&mut Laboratory, &mut Page)) -> Vec<&'static str> {
+        let mut laboratory = Laboratory::new();
+        let sealed = laboratory.seal(&statement(), "analyst", AT);
+        let mut page = page(&[&sealed]);
+        change(&mut laboratory, &mut page);
+        let verification = laboratory.verify(&page);
+        let failed = verification
+            .findings
+            .iter()
+            .any(|f| f.severity() == Severity::Failure);
+        assert_eq!(
+            verification.verified.is_none(),
+            failed || page.record.is_none()
+        );
+        names(&verification.findings)
+    }
+
+    #[test]
+    fn a_sealed_result_verifies_with_either_line_ending() {
+        assert_eq!(found(|_, _| ()), [""; 0]);
+        let crlf = |text: &[u8]| String::from_utf8_lossy(text).replace('\n', "\r\n");
+        let found = found(|_, page| {
+            page.question = crlf(&page.question).into_bytes();
+            page.answer = crlf(&page.answer).into_bytes();
+            page.record = page.record.as_ref().map(|text| crlf(text.as_bytes()));
+            page.acts = page.acts.iter().map(|text| crlf(text.as_bytes())).collect();
+            page.readings = Some(b"volume,pH\n1.00,7.20\n".to_vec());
+        });
+        assert_eq!(found, [""; 0]);
+    }
+
+    #[test]
+    fn changed_texts_and_files_are_named() {
+        assert_eq!(found(|_, p| p.question.push(b' ')), ["question-changed"]);
+        assert_eq!(found(|_, p| p.answer[4] = b'8'), ["answer-changed"]);
+        assert_eq!(found(|_, p| p.readings = None), ["attachment-missing"]);
+        assert_eq!(
+            found(|_, p| p.readings = Some(vec![1])),
+            ["attachment-changed"]
+        );
+        let hidden = |p: &mut Page| p.answer = [ANSWER, "\u{202e}".as_bytes()].concat();
+        assert_eq!(
+            found(|_, p| hidden(p)),
+            ["answer-changed", "looks-different"]
+        );
+    }
+
+    #[test]
+    fn every_bit_of_record_and_act_counts() {
+        let mut laboratory = Laboratory::new();
+        let sealed = laboratory.seal(&statement(), "analyst", AT);
+        let of_record = ["record-unreadable", "record-changed", "newer-version"];
+        let of_act = [
+            "act-unreadable",
+            "signature-wrong",
+            "newer-version",
+            "record-changed",
+        ];
+        for bit in [0x01_u8, 0x02, 0x20] {
+            for at in 0..sealed.record.len() {
+                let mut page = page(&[&sealed]);
+                page.record = flipped(&sealed.record, at, bit);
+                let found = names(&laboratory.verify(&page).findings);
+                assert!(
+                    of_record.iter().any(|name| found.contains(name)),
+                    "{at}: {found:?}"
+                );
+            }
+            let act = sealed.act.print();
+            for at in 0..act.len() {
+                let mut page = page(&[&sealed]);
+                page.acts = flipped(&act, at, bit).into_iter().collect();
+                let found = names(&laboratory.verify(&page).findings);
+                let other = found == ["record-without-act"];
+                assert!(
+                    other || of_act.iter().any(|name| found.contains(name)),
+                    "{at}: {found:?}"
+                );
+            }
+        }
+    }
+
+    fn flipped(text: &str, at: usize, bit: u8) -> Option<String> {
+        let mut bytes = text.as_bytes().to_vec();
+        bytes[at] ^= bit;
+        Some(String::from_utf8(bytes).unwrap())
+    }
+
+    #[test]
+    fn a_result_belongs_to_its_place() {
+        assert_eq!(found(|_, p| p.path = "rinse/copy.md"), ["moved-page"]);
+        assert_eq!(found(|_, p| p.label = "rb-119"), ["wrong-label"]);
+        let other = NotebookId::new("0000000000000000").unwrap();
+        assert_eq!(found(|_, p| p.notebook = other), ["wrong-notebook"]);
+        assert_eq!(found(|_, p| p.acts.clear()), ["record-without-act"]);
+        assert_eq!(found(|_, p| p.record = None), ["act-without-record"]);
+    }
+
+    #[test]
+    fn the_roster_judges_by_the_time_of_the_act() {
+        let retire = |laboratory: &mut Laboratory, at: &str| {
+            let key = key("analyst").public_key().clone();
+            laboratory
+                .roster
+                .retire(&name("analyst"), &key, time(at))
+                .unwrap();
+        };
+        assert_eq!(
+            found(|l, _| retire(l, "2026-11-03T10:12:45+01:00")),
+            [""; 0]
+        );
+        assert_eq!(
+            found(|l, _| retire(l, "2026-11-03T10:12:44+01:00")),
+            ["key-retired"]
+        );
+        let late = |l: &mut Laboratory| {
+            l.roster = Roster::default();
+            let key = key("analyst").public_key().clone();
+            l.roster
+                .enrol(name("analyst"), key, time("2026-11-04T00:00:00Z"))
+                .unwrap();
+        };
+        assert_eq!(found(|l, _| late(l)), ["key-outside-dates"]);
+        assert_eq!(
+            found(|l, _| l.roster = Roster::default()),
+            ["signer-not-on-roster"]
+        );
+        let other = |l: &mut Laboratory| {
+            l.roster = Roster::default();
+            let key = key("stranger").public_key().clone();
+            l.roster
+                .enrol(name("analyst"), key, time("2026-01-01T00:00:00Z"))
+                .unwrap();
+        };
+        assert_eq!(found(|l, _| other(l)), ["key-not-on-roster"]);
+    }
+
+    #[test]
+    fn the_policy_is_a_warning_and_no_failure() {
+        let require = |l: &mut Laboratory, days| {
+            l.policy.required.insert(Meaning::Reviewed);
+            l.policy.due_days = days;
+        };
+        assert_eq!(found(|l, _| require(l, None)), ["required-act-missing"]);
+        assert_eq!(found(|l, _| require(l, Some(6))), ["required-act-missing"]);
+        assert_eq!(found(|l, _| require(l, Some(5))), ["overdue"]);
+        let role = |l: &mut Laboratory| {
+            let roles = l.people[1].roles.clone();
+            l.policy.reserved.insert(Meaning::Performed, roles);
+        };
+        assert_eq!(found(|l, _| role(l)), ["not-authorised"]);
+        let rename = |l: &mut Laboratory| l.people[0].name = l.people[1].name.clone();
+        assert_eq!(found(|l, _| rename(l)), ["name-differs"]);
+        assert_eq!(
+            found(|l, _| l.now = time("2026-11-01T00:00:00Z")),
+            ["time-to-come"]
+        );
+    }
+}
