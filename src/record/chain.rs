@@ -3,6 +3,7 @@
 use std::collections::{BTreeMap, BTreeSet};
 
 use super::act::SignedAct;
+use super::conformity::signature_faults;
 use super::digest::Digest;
 use super::fault::Fault;
 use super::finding::{Finding, Part, Place};
@@ -11,7 +12,6 @@ use super::register::{Entry, Register};
 use super::roster::Roster;
 use super::statement::Statement;
 use super::succession::{self, Placed};
-use super::verification::signature_faults;
 
 /// A whole notebook's sealed results and registers.
 #[derive(Clone, Copy, Debug)]
@@ -250,5 +250,147 @@ fn missing_from_registers(notebook: &Notebook<'_>, findings: &mut Vec<Finding>) 
                 ));
             }
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::act::Meaning;
+    use crate::record::sealing::Sealed;
+    use crate::record::specimen::{Laboratory, labelled, name, names, page, record, statement};
+
+    /// The analyst signs on Monday, Wednesday and Friday; the reviewer on Thursday.
+    struct Week {
+        laboratory: Laboratory,
+        analysts: Vec<Sealed>,
+        reviewers: Sealed,
+    }
+
+    fn week() -> Week {
+        let mut laboratory = Laboratory::new();
+        let mut seal = |signer, label: &str, at| laboratory.seal(&labelled(label), signer, at);
+        let monday = seal("analyst", "a", "2026-11-02T09:00:00+01:00");
+        let wednesday = seal("analyst", "b", "2026-11-04T09:00:00+01:00");
+        let reviewers = seal("reviewer", "c", "2026-11-05T09:00:00+01:00");
+        let friday = seal("analyst", "d", "2026-11-06T09:00:00+01:00");
+        let analysts = vec![monday, wednesday, friday];
+        Week {
+            laboratory,
+            analysts,
+            reviewers,
+        }
+    }
+
+    impl Week {
+        fn found(&self, pages: &[&Sealed]) -> Vec<&'static str> {
+            let records: Vec<_> = pages.iter().map(|sealed| record(&[*sealed])).collect();
+            let placed = records.iter().map(|record| Placed {
+                page: record.statement.page.as_str(),
+                label: record.statement.label.as_str(),
+                superseded: false,
+                record,
+            });
+            names(&examine(&Notebook {
+                results: &placed.collect::<Vec<_>>(),
+                registers: &self.laboratory.registers,
+                roster: &self.laboratory.roster,
+            }))
+        }
+
+        fn all(&self) -> Vec<&Sealed> {
+            self.analysts.iter().chain([&self.reviewers]).collect()
+        }
+
+        /// Leaves only these acts in the analyst's register.
+        fn keep_of_analyst(&mut self, kept: &[usize]) {
+            let mut register = Register::empty(name("analyst"));
+            for at in kept {
+                register = register.with(self.analysts[*at].entry.clone());
+            }
+            self.laboratory
+                .registers
+                .retain(|other| *other.signer() != name("analyst"));
+            self.laboratory.registers.push(register);
+        }
+    }
+
+    #[test]
+    fn a_whole_week_is_in_order() {
+        let week = week();
+        assert_eq!(week.found(&week.all()), [""; 0]);
+    }
+
+    #[test]
+    fn an_act_that_is_gone_from_the_middle_leaves_a_gap() {
+        let mut week = week();
+        week.keep_of_analyst(&[0, 2]);
+        let found = week.found(&[&week.analysts[0], &week.reviewers, &week.analysts[2]]);
+        assert_eq!(found, ["rolled-back", "chain-gap"]);
+    }
+
+    #[test]
+    fn acts_that_are_gone_from_the_end_are_found_if_somebody_saw_them() {
+        let mut week = week();
+        week.keep_of_analyst(&[0]);
+        assert_eq!(
+            week.found(&[&week.analysts[0], &week.reviewers]),
+            ["rolled-back"]
+        );
+        week.keep_of_analyst(&[0, 1]);
+        let unseen = week.found(&[&week.analysts[0], &week.analysts[1], &week.reviewers]);
+        assert_eq!(
+            unseen, [""; 0],
+            "nobody saw the last act: an outside copy is needed"
+        );
+    }
+
+    #[test]
+    fn pages_and_registers_are_held_against_each_other() {
+        let mut week = week();
+        let without = week.found(&week.all()[1..]);
+        assert_eq!(without, ["act-missing-from-page"]);
+        week.keep_of_analyst(&[0, 1]);
+        assert_eq!(week.found(&week.all()), ["act-missing-from-register"]);
+    }
+
+    #[test]
+    fn branches_fork_the_chain_and_the_next_act_joins_them() {
+        let mut laboratory = Laboratory::new();
+        let first = laboratory.seal(&labelled("a"), "analyst", "2026-11-02T09:00:00+01:00");
+        let at = "2026-11-03T09:00:00+01:00";
+        let left = laboratory.try_seal(&labelled("b"), "analyst", at).unwrap();
+        let right = laboratory.try_seal(&labelled("c"), "analyst", at).unwrap();
+        laboratory.keep(&left);
+        laboratory.keep(&right);
+        let reviewers = laboratory.seal(&labelled("e"), "reviewer", at);
+        let mut week = Week {
+            laboratory,
+            analysts: vec![first, left, right],
+            reviewers,
+        };
+        assert_eq!(week.found(&week.all()), ["duplicate-number", "chain-fork"]);
+        let next = week.laboratory.seal(&labelled("d"), "analyst", at);
+        assert_eq!(next.act.act().previous.len(), 2);
+        week.analysts.push(next);
+        assert_eq!(week.found(&week.all()), ["joined-fork"]);
+    }
+
+    #[test]
+    fn a_countersignature_that_is_in_the_register_only_is_missing_from_the_page() {
+        let mut laboratory = Laboratory::new();
+        let sealed = laboratory.seal(&statement(), "analyst", "2026-11-02T09:00:00+01:00");
+        let verified = laboratory.verify(&page(&[&sealed])).verified.unwrap();
+        let by = ("reviewer", "2026-11-03T09:00:00+01:00");
+        let reviewed = laboratory
+            .try_countersign(&verified, Meaning::Reviewed, by)
+            .unwrap();
+        laboratory.keep(&reviewed);
+        let week = Week {
+            laboratory,
+            analysts: vec![sealed],
+            reviewers: reviewed,
+        };
+        assert_eq!(week.found(&[&week.analysts[0]]), ["act-missing-from-page"]);
     }
 }

@@ -80,3 +80,45 @@ fn is_keepers(entry: &Entry, fingerprint: &str) -> bool {
                 && signature.verify(act.print().as_bytes(), &key).is_ok()
         })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::identity::{NotebookPath, TextLine};
+    use crate::record::signature::Signer as _;
+    use crate::record::specimen::{Laboratory, key, names, statement};
+    use crate::record::statement::Named;
+
+    #[test]
+    fn a_rewritten_roster_is_found_with_the_keepers_fingerprint() {
+        let mut laboratory = Laboratory::new();
+        let bytes = laboratory.roster.print();
+        let declaration = Declaration {
+            notebook: statement().notebook,
+            files: vec![Named::new(
+                NotebookPath::new("roster").unwrap(),
+                Digest::of_lines(&bytes),
+            )],
+            says: vec![TextLine::new("enrolled analyst and reviewer").unwrap()],
+        };
+        laboratory.declare(&declaration, ("reviewer", "2026-01-02T08:00:00Z"));
+        let fingerprint = key("reviewer").public_key().fingerprint();
+        let rewritten = [&bytes[..], b"# more\n"].concat();
+        let found = |bytes: &[u8], keeper| {
+            names(&examine_roster(&Keeping {
+                roster: &Roster::parse(bytes),
+                files: &[("roster", bytes)],
+                registers: &laboratory.registers,
+                keeper,
+            }))
+        };
+        assert_eq!(found(&bytes, Some(fingerprint.as_str())), [""; 0]);
+        assert_eq!(
+            found(&rewritten, Some(&fingerprint)),
+            ["roster-not-the-keepers"]
+        );
+        assert_eq!(found(&rewritten, None), ["roster-trusted-as-found"]);
+        let others = key("analyst").public_key().fingerprint();
+        assert_eq!(found(&bytes, Some(&others)), ["roster-not-the-keepers"]);
+    }
+}

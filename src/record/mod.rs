@@ -3,6 +3,7 @@
 mod act;
 mod appearance;
 mod chain;
+mod conformity;
 mod declaration;
 mod digest;
 mod fault;

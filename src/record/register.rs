@@ -284,3 +284,50 @@ fn heading(signer: &SignerName) -> String {
         "# Register of {signer}\n\nThe acts of one signer in their order. The program adds at the end; nobody changes it.\n"
     )
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::specimen::{Laboratory, labelled, name};
+
+    fn written() -> String {
+        let mut laboratory = Laboratory::new();
+        laboratory.seal(&labelled("z"), "reviewer", "2026-11-01T09:00:00+01:00");
+        let mut text = String::new();
+        for (label, at) in [("a", "2026-11-02T09:00:00Z"), ("b", "2026-11-03T09:00:00Z")] {
+            text += &laboratory
+                .seal(&labelled(label), "analyst", at)
+                .register_addition;
+        }
+        text
+    }
+
+    #[test]
+    fn additions_make_the_whole_file() {
+        let text = written();
+        let register = Register::parse(name("analyst"), text.as_bytes());
+        assert_eq!(register.faults(), []);
+        assert_eq!(register.print(), text);
+        assert_eq!(register.entries().len(), 2);
+        let crlf = text.replace('\n', "\r\n");
+        assert_eq!(Register::parse(name("analyst"), crlf.as_bytes()), register);
+    }
+
+    #[test]
+    fn every_changed_byte_of_the_text_shows() {
+        let text = written();
+        let right = Register::parse(name("analyst"), text.as_bytes());
+        for at in 0..text.len() {
+            let mut bytes = text.clone().into_bytes();
+            bytes[at] ^= 0x04;
+            let changed = Register::parse(name("analyst"), &bytes);
+            assert!(
+                !changed.faults().is_empty() || changed != right,
+                "byte {at}"
+            );
+        }
+        let more = Register::parse(name("analyst"), format!("{text}\n").as_bytes());
+        let line = text.lines().count() + 1;
+        assert_eq!(more.faults(), [RegisterFault::Text { line }]);
+    }
+}

@@ -319,3 +319,74 @@ fn read_date(text: &str) -> Option<DateTime<Utc>> {
     };
     Some(naive.and_utc())
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::signature::Signer as _;
+    use crate::record::specimen::{key, name, time};
+
+    #[test]
+    fn bytes_are_kept_and_foreign_lines_give_no_right() {
+        let public = key("analyst").public_key().print();
+        let text = format!(
+            "# people of the bench\r\n\nanalyst namespaces=\"ionfolio\" {public}\r\n\
+             *@example.org cert-authority {public}\n\
+             other namespaces=\"git\" {public}\n\
+             third namespaces=\"ionfolio\",valid-after=\"20260101\" {public}\n\
+             fourth namespaces=\"ionfolio\",valid-after=\"20260101Z\",valid-before=\"202612312359Z\" {public}"
+        );
+        let roster = Roster::parse(text.as_bytes());
+        assert_eq!(roster.print(), text.as_bytes());
+        assert_eq!(roster.unread_lines().collect::<Vec<_>>(), [4, 5, 6]);
+        let signers: Vec<_> = roster
+            .enrolments()
+            .map(|entry| entry.signer.as_str())
+            .collect();
+        assert_eq!(signers, ["analyst", "fourth"]);
+        assert_eq!(roster.shared_keys().count(), 1);
+    }
+
+    #[test]
+    fn keys_are_rotated_and_retired() {
+        let (old, new) = (key("old"), key("new"));
+        let analyst = name("analyst");
+        let start = time("2026-01-01T00:00:00+01:00");
+        let change = time("2026-06-01T12:00:00+02:00");
+        let mut roster = Roster::parse(b"# no line end");
+        roster
+            .enrol(analyst.clone(), old.public_key().clone(), start)
+            .unwrap();
+        roster.retire(&analyst, old.public_key(), change).unwrap();
+        roster
+            .enrol(analyst.clone(), new.public_key().clone(), change)
+            .unwrap();
+        let roster = Roster::parse(&roster.print());
+        let standing = |key: &PublicKey, at: &str| roster.standing(&analyst, key, time(at));
+        let (before, after) = ("2026-06-01T09:59:59Z", "2026-06-01T10:00:01Z");
+        assert_eq!(standing(old.public_key(), before), Standing::Valid);
+        assert_eq!(
+            standing(old.public_key(), after),
+            Standing::Retired(change.to_utc())
+        );
+        assert_eq!(
+            standing(new.public_key(), before),
+            Standing::NotYet(change.to_utc())
+        );
+        assert_eq!(standing(new.public_key(), after), Standing::Valid);
+        assert_eq!(roster.keys_of(&analyst, time(before)).count(), 1);
+    }
+
+    #[test]
+    fn one_key_is_one_persons() {
+        let mut roster = Roster::default();
+        let start = time("2026-01-01T00:00:00Z");
+        let key = key("analyst").public_key().clone();
+        roster.enrol(name("analyst"), key.clone(), start).unwrap();
+        let taken = roster.enrol(name("reviewer"), key.clone(), start);
+        let holder = name("analyst");
+        assert_eq!(taken, Err(RosterError::KeyTaken { holder }));
+        let missing = roster.retire(&name("reviewer"), &key, start);
+        assert!(missing.is_err());
+    }
+}

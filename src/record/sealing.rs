@@ -4,6 +4,7 @@ use chrono::{DateTime, FixedOffset};
 
 use super::act::{Act, Meaning, SignedAct, print_time, whole_seconds};
 use super::appearance::{Disguise, disguises};
+use super::conformity::signature_faults;
 use super::declaration::Declaration;
 use super::digest::Digest;
 use super::fault::Fault;
@@ -13,7 +14,7 @@ use super::register::{Entry, Register, Seen};
 use super::roster::Roster;
 use super::signature::{NAMESPACE, SignatureFault, Signer, SigningError};
 use super::statement::Statement;
-use super::verification::{Record, Verified, signature_faults};
+use super::verification::{Record, Verified};
 
 /// What is to be sealed: the statement, and the texts whose digests it carries.
 #[derive(Clone, Copy, Debug)]

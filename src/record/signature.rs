@@ -7,12 +7,11 @@ use ssh_key::{Algorithm, EcdsaCurve, HashAlg, LineEnding, SshSig};
 /// The namespace of every signature; a signature made for anything else fits no act.
 pub const NAMESPACE: &str = "ionfolio";
 
-const BEGIN: &str = "-----BEGIN SSH SIGNATURE-----";
-const END: &str = "-----END SSH SIGNATURE-----";
-/// Characters on a line of armour, as `ssh-keygen` writes it.
-const WIDTH: usize = 70;
-
-/// A public key of a kind that may sign: Ed25519 or ECDSA on P-256, held in a file, an agent or a security key.
+/// A public key of a kind that may sign: Ed25519 in a file, an agent or a security key, or ECDSA on P-256 in a file or an
+/// agent.
+///
+/// ECDSA keys of security keys are not taken: the library in use cannot write their signatures, so that one signature
+/// could not be held to one spelling.
 #[derive(Clone, PartialEq, Eq)]
 pub struct PublicKey(ssh_key::PublicKey);
 
@@ -55,7 +54,6 @@ impl PublicKey {
             key.algorithm(),
             Algorithm::Ed25519
                 | Algorithm::SkEd25519
-                | Algorithm::SkEcdsaSha2NistP256
                 | Algorithm::Ecdsa {
                     curve: EcdsaCurve::NistP256
                 }
@@ -120,9 +118,6 @@ pub enum SigningError {
     /// The holder of the key (an agent, a security key) failed or refused.
     #[error("the holder of the key did not sign")]
     Holder(#[source] Box<dyn std::error::Error + Send + Sync>),
-    /// A kind of key that can be verified but not used for signing here.
-    #[error("keys of this kind can be verified, but not used for signing")]
-    Kind,
     /// What came back is not a signature of this key over this message.
     #[error("what the holder of the key gave back {0}")]
     Answer(#[from] SignatureFault),
@@ -169,9 +164,6 @@ impl Signature {
     /// [`SignatureFault`] if the armour is not in the one form that `ssh-keygen` writes, or what it holds is not a
     /// version 1 signature of a known kind of key over a SHA-512 hash. The namespace is checked by [`Self::verify`].
     pub fn parse(armour: &str) -> Result<Self, SignatureFault> {
-        if !is_canonical(armour) {
-            return Err(SignatureFault::Armour);
-        }
         let decoded = SshSig::from_pem(armour).map_err(|_unreadable| SignatureFault::Unreadable)?;
         if decoded.version() != SshSig::VERSION {
             return Err(SignatureFault::Unreadable);
@@ -184,6 +176,10 @@ impl Signature {
             decoded,
         };
         signature.public_key()?;
+        // The reader overlooks some wrong lengths and spellings, which `ssh-keygen` does not.
+        if print(&signature.decoded)? != armour {
+            return Err(SignatureFault::Armour);
+        }
         Ok(signature)
     }
 
@@ -201,11 +197,8 @@ impl Signature {
     ///
     /// # Errors
     ///
-    /// [`SigningError`] if the answer cannot be read, or is of a kind that cannot be written (an ECDSA security key).
+    /// [`SigningError`] if the answer cannot be read, or is no signature of this key.
     pub fn of_agent(key: &PublicKey, namespace: &str, answer: &[u8]) -> Result<Self, SigningError> {
-        if key.0.algorithm() == Algorithm::SkEcdsaSha2NistP256 {
-            return Err(SigningError::Kind);
-        }
         let raw = ssh_key::Signature::try_from(answer)
             .map_err(|_unreadable| SignatureFault::Unreadable)?;
         let made = SshSig::new(key.0.key_data().clone(), namespace, HashAlg::Sha512, raw)
@@ -214,13 +207,7 @@ impl Signature {
     }
 
     pub(super) fn of(made: &SshSig) -> Result<Self, SignatureFault> {
-        let mut armour = made
-            .to_pem(LineEnding::LF)
-            .map_err(|_unwritable| SignatureFault::Unreadable)?;
-        if !armour.ends_with('\n') {
-            armour.push('\n');
-        }
-        Self::parse(&armour)
+        Self::parse(&print(made)?)
     }
 
     /// The armour, with LF, ended by one.
@@ -262,26 +249,68 @@ impl fmt::Debug for Signature {
     }
 }
 
-/// Whether every line of the armour is as `ssh-keygen` writes it, so that one signature has one spelling.
-fn is_canonical(armour: &str) -> bool {
-    let base64 = |line: &str| {
-        line.bytes()
-            .all(|byte| byte.is_ascii_alphanumeric() || b"+/=".contains(&byte))
-    };
-    let body = armour
-        .strip_prefix(BEGIN)
-        .and_then(|rest| rest.strip_prefix('\n'))
-        .and_then(|rest| rest.strip_suffix('\n'))
-        .and_then(|rest| rest.strip_suffix(END))
-        .and_then(|rest| rest.strip_suffix('\n'));
-    let Some(body) = body else {
-        return false;
-    };
-    let lines: Vec<&str> = body.split('\n').collect();
-    let Some((last, full)) = lines.split_last() else {
-        return false;
-    };
-    full.iter().all(|line| line.len() == WIDTH && base64(line))
-        && (1..=WIDTH).contains(&last.len())
-        && base64(last)
+/// The one spelling of a signature: the armour that `ssh-keygen` writes.
+fn print(signature: &SshSig) -> Result<String, SignatureFault> {
+    let mut armour = signature
+        .to_pem(LineEnding::LF)
+        .map_err(|_unwritable| SignatureFault::Unreadable)?;
+    if !armour.ends_with('\n') {
+        armour.push('\n');
+    }
+    Ok(armour)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::specimen::key;
+
+    #[test]
+    fn a_signature_fits_its_message_key_and_namespace() {
+        let (mine, other) = (key("analyst"), key("reviewer"));
+        let signature = mine.sign(NAMESPACE, b"lines\n").unwrap();
+        let verify = |message: &[u8], key: &PublicKey| signature.verify(message, key);
+        assert_eq!(verify(b"lines\n", mine.public_key()), Ok(()));
+        assert_eq!(
+            verify(b"lines", mine.public_key()),
+            Err(SignatureFault::Wrong)
+        );
+        assert_eq!(
+            verify(b"lines\n", other.public_key()),
+            Err(SignatureFault::Key)
+        );
+        let file = mine.sign("file", b"lines\n").unwrap();
+        let found = file.verify(b"lines\n", mine.public_key());
+        assert_eq!(found, Err(SignatureFault::Namespace));
+    }
+
+    #[test]
+    fn an_agents_answer_makes_the_same_signature() {
+        let mine = key("analyst");
+        let signature = mine.sign(NAMESPACE, b"lines\n").unwrap();
+        let answer = Vec::try_from(signature.decoded.signature().clone()).unwrap();
+        let key = PublicKey::from_wire(&mine.public_key().wire()).unwrap();
+        assert_eq!(
+            Signature::of_agent(&key, NAMESPACE, &answer).unwrap(),
+            signature
+        );
+    }
+
+    #[test]
+    fn a_signature_has_one_spelling() {
+        let armour = key("analyst")
+            .sign(NAMESPACE, b"x")
+            .unwrap()
+            .armour()
+            .to_owned();
+        let rewrapped = armour.replacen("U1NI", "U1NI\n", 1);
+        for other in [
+            &armour[1..],
+            &format!("{armour}\n"),
+            &rewrapped,
+            armour.trim_end(),
+        ] {
+            assert!(Signature::parse(other).is_err(), "{other}");
+        }
+    }
 }

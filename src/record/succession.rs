@@ -128,3 +128,95 @@ fn sources(placed: &Placed<'_>, results: &[Placed<'_>], findings: &mut Vec<Findi
         findings.push(placed.finding(Part::Record, Fault::MadeFrom { source_name, fate }));
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::act::Meaning;
+    use crate::record::identity::TextLine;
+    use crate::record::specimen::{Laboratory, labelled, names, page, record, statement};
+    use crate::record::statement::{Named, Supersession};
+
+    const PAGE: &str = "rinse/2026-11-03.md";
+    const AT: &str = "2026-11-03T10:12:45+01:00";
+
+    fn found(results: &[Placed<'_>]) -> Vec<&'static str> {
+        let mut findings = Vec::new();
+        examine(results, &mut findings);
+        names(&findings)
+    }
+
+    fn placed<'a>(label: &'a str, superseded: bool, record: &'a Record) -> Placed<'a> {
+        Placed {
+            page: PAGE,
+            label,
+            superseded,
+            record,
+        }
+    }
+
+    /// An old result, and one that takes its place.
+    fn amended() -> (Record, Record) {
+        let mut laboratory = Laboratory::new();
+        let old = laboratory.seal(&labelled("old"), "analyst", AT);
+        let mut statement = labelled("new");
+        statement.supersedes = Some(Supersession {
+            replaced: Named::new(labelled("old").label, old.digest),
+            reason: TextLine::new("wrong lot").unwrap(),
+        });
+        let new = laboratory.seal(&statement, "analyst", AT);
+        (record(&[&old]), record(&[&new]))
+    }
+
+    #[test]
+    fn an_amendment_needs_both_results_and_the_mark() {
+        let (old, new) = amended();
+        let both = |mark| found(&[placed("old", mark, &old), placed("new", false, &new)]);
+        assert_eq!(both(true), [""; 0]);
+        assert_eq!(both(false), ["supersession-not-marked"]);
+        let alone = found(&[placed("old", true, &old)]);
+        assert_eq!(alone, ["superseded-without-successor"]);
+        assert_eq!(found(&[placed("new", false, &new)]), ["superseded-missing"]);
+    }
+
+    #[test]
+    fn copies_and_labels_that_stand_twice_are_found() {
+        let (old, _) = amended();
+        let other = Placed {
+            page: "copy.md",
+            ..placed("old", false, &old)
+        };
+        assert_eq!(
+            found(&[placed("old", false, &old), other]),
+            ["copied-result"]
+        );
+        let twice = [placed("old", false, &old), placed("old", false, &old)];
+        assert_eq!(found(&twice), ["duplicate-label"]);
+    }
+
+    #[test]
+    fn what_is_made_from_a_result_learns_its_fate() {
+        let mut laboratory = Laboratory::new();
+        let stock = laboratory.seal(&statement(), "analyst", AT);
+        let mut made = labelled("made");
+        let name = ResultName {
+            page: statement().page,
+            label: statement().label,
+        };
+        made.uses = vec![Named::new(name, stock.digest)];
+        let made = record(&[&laboratory.seal(&made, "analyst", AT)]);
+        let verified = laboratory.verify(&page(&[&stock])).verified.unwrap();
+        let by = ("analyst", "2026-11-04T10:00:00+01:00");
+        let withdrawn = laboratory
+            .try_countersign(&verified, Meaning::Withdrawn, by)
+            .unwrap();
+        let (sound, gone) = (record(&[&stock]), record(&[&stock, &withdrawn]));
+        let with = |stock| found(&[placed("rb-118", false, stock), placed("made", false, &made)]);
+        assert_eq!(with(&sound), [""; 0]);
+        assert_eq!(with(&gone), ["made-from-changed"]);
+        assert_eq!(
+            found(&[placed("made", false, &made)]),
+            ["made-from-changed"]
+        );
+    }
+}

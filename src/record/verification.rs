@@ -7,15 +7,16 @@ use std::fmt;
 
 use chrono::{DateTime, FixedOffset};
 
-use super::act::{Act, ActError, Meaning, SignedAct};
+use super::act::{Act, ActError, SignedAct};
 use super::appearance::disguises;
+use super::conformity::{order_faults, person_faults, policy_faults, signature_faults};
 use super::digest::Digest;
 use super::fault::Fault;
 use super::finding::{Finding, Part, Place, Severity};
 use super::identity::{NotebookId, NotebookPath};
 use super::lines::LineError;
 use super::policy::{Person, Policy};
-use super::roster::{Roster, Standing};
+use super::roster::Roster;
 use super::statement::Statement;
 
 /// What stands in the page and beside it, for one result.
@@ -109,8 +110,13 @@ pub fn verify(parts: &Parts<'_>, authority: &Authority<'_>) -> Verification {
         acts,
     });
     if let Some(record) = &record {
-        check.order_of_acts(record);
-        check.policy(record);
+        let acts: Vec<&Act> = record.acts.iter().map(SignedAct::act).collect();
+        for (part, fault) in order_faults(&acts)
+            .into_iter()
+            .chain(policy_faults(&acts, authority))
+        {
+            check.find(part, fault);
+        }
     }
     let failed = |finding: &Finding| finding.severity() == Severity::Failure;
     let sound = !check.findings.iter().any(failed);
@@ -248,117 +254,10 @@ impl Check<'_> {
         for fault in signature_faults(signed, self.authority.roster) {
             self.find(part.clone(), fault);
         }
-        if act.time > self.authority.now {
-            self.find(part.clone(), Fault::TimeToCome { time: act.time });
-        }
-        self.person(part, act);
-    }
-
-    fn person(&mut self, part: Part, act: &Act) {
-        let Authority { policy, people, .. } = *self.authority;
-        if !policy.authorises(people, &act.signer, act.meaning) {
-            let signer = act.signer.clone();
-            let meaning = act.meaning;
-            self.find(part.clone(), Fault::NotAuthorised { signer, meaning });
-        }
-        let mut known = people.iter().filter(|person| person.signer == act.signer);
-        if let Some(person) = known.next()
-            && person.name != act.name
-        {
-            let (printed, given) = (act.name.clone(), person.name.clone());
-            self.find(part, Fault::NameDiffers { printed, given });
+        for fault in person_faults(act, self.authority) {
+            self.find(part.clone(), fault);
         }
     }
-
-    fn order_of_acts(&mut self, record: &Record) {
-        for (signed, place) in record.acts.iter().zip(1..) {
-            let (act, part) = (signed.act(), Part::Act(place));
-            let found = act.meaning;
-            match (place, found) {
-                (1, Meaning::Performed) => {}
-                (1, _) => self.find(part.clone(), Fault::FirstActNotPerformed { found }),
-                (_, Meaning::Performed) => self.find(part.clone(), Fault::ActOutOfPlace { found }),
-                _ if !found.is_of_a_page() => {
-                    self.find(part.clone(), Fault::ActOutOfPlace { found });
-                }
-                _ => {}
-            }
-            let before = record.acts.iter().take(place - 1).map(|a| a.act().time);
-            if let Some(before) = before.max().filter(|before| act.time < *before) {
-                let time = act.time;
-                self.find(part.clone(), Fault::ClockRanBack { time, before });
-            }
-            let signer = act.signer.clone();
-            match found {
-                Meaning::Rejected => self.find(part, Fault::Rejected { signer }),
-                Meaning::Withdrawn => self.find(part, Fault::Withdrawn { signer }),
-                _ => {}
-            }
-        }
-    }
-
-    fn policy(&mut self, record: &Record) {
-        let Authority { policy, now, .. } = *self.authority;
-        let Some(performed) = record.acts.first().map(SignedAct::act) else {
-            return;
-        };
-        for (signed, place) in record.acts.iter().zip(1..) {
-            let act = signed.act();
-            if policy.forbids_own(&performed.signer, &act.signer, act.meaning) {
-                let (signer, meaning) = (act.signer.clone(), act.meaning);
-                self.find(Part::Act(place), Fault::OwnReview { signer, meaning });
-            }
-        }
-        let ended = record
-            .acts
-            .iter()
-            .any(|act| act.act().meaning == Meaning::Withdrawn);
-        for meaning in policy.required.iter().copied().filter(|_| !ended) {
-            let fulfils = |act: &Act| {
-                act.meaning == meaning
-                    && !policy.forbids_own(&performed.signer, &act.signer, meaning)
-                    && policy.authorises(self.authority.people, &act.signer, meaning)
-            };
-            if record.acts.iter().any(|act| fulfils(act.act())) {
-                continue;
-            }
-            let late = policy
-                .due_days
-                .map(|due| (now - performed.time).num_days() - i64::from(due));
-            self.find(
-                Part::Whole,
-                match late {
-                    Some(days) if days > 0 => Fault::Overdue { meaning, days },
-                    _ => Fault::RequiredActMissing { meaning },
-                },
-            );
-        }
-    }
-}
-
-/// What is wrong with the signature of an act, by the roster and the act's own time.
-pub(super) fn signature_faults(signed: &SignedAct, roster: &Roster) -> Vec<Fault> {
-    let act = signed.act();
-    let signer = act.signer.clone();
-    let key = match signed.signature().public_key() {
-        Ok(key) => key,
-        Err(fault) => return vec![Fault::SignatureWrong(fault)],
-    };
-    let mut faults = Vec::new();
-    if let Err(fault) = signed.signature().verify(act.print().as_bytes(), &key) {
-        faults.push(Fault::SignatureWrong(fault));
-    }
-    match roster.standing(&signer, &key, act.time) {
-        Standing::Valid => {}
-        Standing::UnknownSigner => faults.push(Fault::SignerNotOnRoster { signer }),
-        Standing::UnknownKey => faults.push(Fault::KeyNotOnRoster {
-            signer,
-            fingerprint: key.fingerprint(),
-        }),
-        Standing::NotYet(from) => faults.push(Fault::KeyOutsideDates { signer, from }),
-        Standing::Retired(at) => faults.push(Fault::KeyRetired { signer, at }),
-    }
-    faults
 }
 
 fn unreadable(error: LineError, otherwise: impl Fn(LineError) -> Fault) -> Fault {
@@ -371,11 +270,7 @@ fn unreadable(error: LineError, otherwise: impl Fn(LineError) -> Fault) -> Fault
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::record::finding::Severity;
-    use crate::record::signature::Signer as _;
-    use crate::record::specimen::{
-        ANSWER, Laboratory, Page, key, name, names, page, statement, time,
-    };
+    use crate::record::specimen::{ANSWER, Laboratory, Page, names, page, statement};
 
     const AT: &str = "2026-11-03T10:12:45+01:00";
 
@@ -455,7 +350,7 @@ mod tests {
                 let other = found == ["record-without-act"];
                 assert!(
                     other || of_act.iter().any(|name| found.contains(name)),
-                    "{at}: {found:?}"
+                    "{at} {bit}: {found:?}"
                 );
             }
         }
@@ -475,66 +370,5 @@ mod tests {
         assert_eq!(found(|_, p| p.notebook = other), ["wrong-notebook"]);
         assert_eq!(found(|_, p| p.acts.clear()), ["record-without-act"]);
         assert_eq!(found(|_, p| p.record = None), ["act-without-record"]);
-    }
-
-    #[test]
-    fn the_roster_judges_by_the_time_of_the_act() {
-        let retire = |laboratory: &mut Laboratory, at: &str| {
-            let key = key("analyst").public_key().clone();
-            laboratory
-                .roster
-                .retire(&name("analyst"), &key, time(at))
-                .unwrap();
-        };
-        assert_eq!(
-            found(|l, _| retire(l, "2026-11-03T10:12:45+01:00")),
-            [""; 0]
-        );
-        assert_eq!(
-            found(|l, _| retire(l, "2026-11-03T10:12:44+01:00")),
-            ["key-retired"]
-        );
-        let late = |l: &mut Laboratory| {
-            l.roster = Roster::default();
-            let key = key("analyst").public_key().clone();
-            l.roster
-                .enrol(name("analyst"), key, time("2026-11-04T00:00:00Z"))
-                .unwrap();
-        };
-        assert_eq!(found(|l, _| late(l)), ["key-outside-dates"]);
-        assert_eq!(
-            found(|l, _| l.roster = Roster::default()),
-            ["signer-not-on-roster"]
-        );
-        let other = |l: &mut Laboratory| {
-            l.roster = Roster::default();
-            let key = key("stranger").public_key().clone();
-            l.roster
-                .enrol(name("analyst"), key, time("2026-01-01T00:00:00Z"))
-                .unwrap();
-        };
-        assert_eq!(found(|l, _| other(l)), ["key-not-on-roster"]);
-    }
-
-    #[test]
-    fn the_policy_is_a_warning_and_no_failure() {
-        let require = |l: &mut Laboratory, days| {
-            l.policy.required.insert(Meaning::Reviewed);
-            l.policy.due_days = days;
-        };
-        assert_eq!(found(|l, _| require(l, None)), ["required-act-missing"]);
-        assert_eq!(found(|l, _| require(l, Some(6))), ["required-act-missing"]);
-        assert_eq!(found(|l, _| require(l, Some(5))), ["overdue"]);
-        let role = |l: &mut Laboratory| {
-            let roles = l.people[1].roles.clone();
-            l.policy.reserved.insert(Meaning::Performed, roles);
-        };
-        assert_eq!(found(|l, _| role(l)), ["not-authorised"]);
-        let rename = |l: &mut Laboratory| l.people[0].name = l.people[1].name.clone();
-        assert_eq!(found(|l, _| rename(l)), ["name-differs"]);
-        assert_eq!(
-            found(|l, _| l.now = time("2026-11-01T00:00:00Z")),
-            ["time-to-come"]
-        );
     }
 }
