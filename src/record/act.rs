@@ -161,6 +161,7 @@ impl Act {
 pub struct SignedAct {
     act: Act,
     signature: Signature,
+    digest: Digest,
 }
 
 /// Why the content of an `act` fence is not an act with a signature.
@@ -180,8 +181,13 @@ pub enum ActError {
 impl SignedAct {
     /// Puts the signature below the act. Whether it fits is for verification to say.
     #[must_use]
-    pub const fn new(act: Act, signature: Signature) -> Self {
-        Self { act, signature }
+    pub fn new(act: Act, signature: Signature) -> Self {
+        let digest = Digest::of_file(content(&act, &signature).as_bytes());
+        Self {
+            act,
+            signature,
+            digest,
+        }
     }
 
     /// What was done.
@@ -197,9 +203,7 @@ impl SignedAct {
     /// The content of the `act` fence, with LF: the act's lines and the armoured signature.
     #[must_use]
     pub fn print(&self) -> String {
-        let mut text = self.act.print();
-        text.push_str(self.signature.armour());
-        text
+        content(&self.act, &self.signature)
     }
 
     /// Reads the content of an `act` fence.
@@ -212,19 +216,21 @@ impl SignedAct {
         let text = text_of(bytes)?;
         let at = text.find(ARMOUR).ok_or(ActError::Unsigned)?;
         let (lines, armour) = text.split_at(at);
-        Ok(Self {
-            act: Act::parse(lines)?,
-            signature: Signature::parse(armour)?,
-        })
+        Ok(Self::new(Act::parse(lines)?, Signature::parse(armour)?))
     }
 
     /// The digest by which later acts name this one: of the whole content of its fence, lines and signature.
     ///
     /// With the signature included, the chain also tells when a signature was exchanged for another valid one.
-    #[must_use]
-    pub fn digest(&self) -> Digest {
-        Digest::of_lines(self.print().as_bytes())
+    pub const fn digest(&self) -> Digest {
+        self.digest
     }
+}
+
+fn content(act: &Act, signature: &Signature) -> String {
+    let mut text = act.print();
+    text.push_str(signature.armour());
+    text
 }
 
 fn previous(lines: &mut LineReader<'_>) -> Result<Vec<Digest>, LineError> {
@@ -263,4 +269,78 @@ fn parse_time(text: &str) -> Result<DateTime<FixedOffset>, ValueFault> {
 /// The time without its fraction of a second.
 pub(super) fn whole_seconds(time: DateTime<FixedOffset>) -> DateTime<FixedOffset> {
     time.with_nanosecond(0).unwrap_or(time)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::record::signature::{NAMESPACE, Signer as _};
+    use crate::record::specimen::{key, name, time};
+
+    fn act(previous: &[&[u8]]) -> Act {
+        Act {
+            record: Digest::of_lines(b"record\n"),
+            meaning: Meaning::Reviewed,
+            signer: name("analyst"),
+            name: TextLine::new("Ana Lyst").unwrap(),
+            time: time("2026-11-03T10:12:45-03:30"),
+            number: 17,
+            previous: previous
+                .iter()
+                .map(|bytes| Digest::of_file(bytes))
+                .collect(),
+            seen: Some(Digest::of_lines(b"seen\n")),
+            note: Some(TextLine::new("figures agree with the balance's printout").unwrap()),
+        }
+    }
+
+    #[test]
+    fn every_meaning_and_every_line_reads_back() {
+        for meaning in Meaning::ALL {
+            let mut act = act(&[b"abc"]);
+            act.meaning = meaning;
+            assert_eq!(Act::parse(&act.print()), Ok(act));
+        }
+        let bare = Act {
+            seen: None,
+            note: None,
+            ..act(&[])
+        };
+        assert_eq!(Act::parse(&bare.print()), Ok(bare));
+    }
+
+    #[test]
+    fn acts_that_join_branches_name_both_in_order() {
+        // SHA-256 of `abc` begins with ba, that of nothing with e3.
+        assert!(Act::parse(&act(&[b"abc", b""]).print()).is_ok());
+        for wrong in [act(&[b"", b"abc"]), act(&[b"abc", b"abc"])] {
+            assert!(Act::parse(&wrong.print()).is_err());
+        }
+    }
+
+    #[test]
+    fn one_time_has_one_spelling() {
+        for time in [
+            "2026-11-03T10:12:45Z",
+            "2026-11-03t10:12:45+01:00",
+            "2026-11-03T10:12:45.5+01:00",
+        ] {
+            assert_eq!(parse_time(time), Err(ValueFault::Time));
+        }
+    }
+
+    #[test]
+    fn the_signature_belongs_below_the_lines() {
+        let act = act(&[]);
+        let signature = key("analyst")
+            .sign(NAMESPACE, act.print().as_bytes())
+            .unwrap();
+        let signed = SignedAct::new(act, signature);
+        let text = signed.print();
+        assert_eq!(SignedAct::parse(text.as_bytes()).as_ref(), Ok(&signed));
+        let unsigned = SignedAct::parse(signed.act().print().as_bytes());
+        assert_eq!(unsigned, Err(ActError::Unsigned));
+        let below = SignedAct::parse(format!("{text}note: more\n").as_bytes());
+        assert_eq!(below, Err(ActError::Signature(SignatureFault::Unreadable)));
+    }
 }

@@ -66,7 +66,11 @@ pub(super) fn order_faults(acts: &[&Act]) -> Vec<(Part, Fault)> {
             _ if !found.is_of_a_page() => find(Fault::ActOutOfPlace { found }),
             _ => {}
         }
-        let before = acts.iter().take(place - 1).map(|act| act.time).max();
+        let earlier = || acts.iter().take(place - 1);
+        if earlier().any(|other| other == act || other.meaning == Meaning::Withdrawn) {
+            find(Fault::ActOutOfPlace { found });
+        }
+        let before = earlier().map(|act| act.time).max();
         if let Some(before) = before.filter(|before| act.time < *before) {
             let time = act.time;
             find(Fault::ClockRanBack { time, before });
@@ -92,7 +96,8 @@ pub(super) fn policy_faults(acts: &[&Act], authority: &Authority<'_>) -> Vec<(Pa
         now,
         ..
     } = *authority;
-    let Some(performed) = acts.first() else {
+    let done = |act: &&&Act| act.meaning == Meaning::Performed;
+    let Some(performed) = acts.iter().find(done) else {
         return Vec::new();
     };
     let is_own = |act: &Act| policy.forbids_own(&performed.signer, &act.signer, act.meaning);
@@ -191,6 +196,39 @@ mod tests {
         assert_eq!(
             found(|l| l.now = time("2026-11-01T00:00:00Z")),
             ["time-to-come"]
+        );
+    }
+
+    #[test]
+    fn nothing_follows_a_withdrawal_and_nothing_stands_twice() {
+        let mut laboratory = Laboratory::new();
+        let sealed = laboratory.seal(&statement(), "analyst", "2026-11-03T10:12:45+01:00");
+        let verified = laboratory.verify(&page(&[&sealed])).verified.unwrap();
+        let mut act = |meaning, at| {
+            let act = laboratory
+                .try_countersign(&verified, meaning, ("reviewer", at))
+                .unwrap();
+            laboratory.keep(&act);
+            act
+        };
+        let reviewed = act(Meaning::Reviewed, "2026-11-04T10:00:00+01:00");
+        let withdrawn = act(Meaning::Withdrawn, "2026-11-05T10:00:00+01:00");
+        let found = |acts: &[_]| names(&laboratory.verify(&page(acts)).findings);
+        assert_eq!(found(&[&sealed, &reviewed, &withdrawn]), ["withdrawn"]);
+        assert_eq!(
+            found(&[&sealed, &reviewed, &reviewed]),
+            ["act-out-of-place"]
+        );
+        let after = found(&[&sealed, &withdrawn, &reviewed]);
+        assert_eq!(after, ["withdrawn", "act-out-of-place", "clock-ran-back"]);
+        let first = found(&[&reviewed, &sealed]);
+        assert_eq!(
+            first,
+            [
+                "first-act-not-performed",
+                "act-out-of-place",
+                "clock-ran-back"
+            ]
         );
     }
 }

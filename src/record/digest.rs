@@ -148,7 +148,7 @@ mod tests {
 
     #[test]
     fn other_spellings_of_a_digest_are_refused() {
-        for text in ["", "sha256:", &ABC.to_uppercase(), &ABC[..70], "md5:00"] {
+        for text in ["", "sha256:", &ABC.to_uppercase(), "sha256:00", "md5:00"] {
             assert_eq!(Digest::parse(text), Err(ValueFault::Digest), "{text}");
         }
     }

@@ -11,7 +11,7 @@ use super::act::{ActError, SignedAct};
 use super::digest::{Digest, with_line_feeds};
 use super::identity::SignerName;
 use super::lines::ValueFault;
-use super::statement::Named;
+use super::statement::{Named, Statement};
 
 /// The latest acts of other signers whose registers were at hand: one line each, sorted.
 #[derive(Clone, Debug, Default, PartialEq, Eq)]
@@ -266,6 +266,12 @@ impl Register {
 }
 
 impl Entry {
+    /// The statement that the act is about, if it is about a result and not a declaration.
+    #[must_use]
+    pub fn statement(&self) -> Option<Statement> {
+        Statement::parse(self.record.as_bytes()).ok()
+    }
+
     fn print(&self) -> String {
         let act = self.act.act();
         format!(

@@ -4,7 +4,7 @@ use chrono::{DateTime, FixedOffset};
 
 use super::act::{Act, Meaning, SignedAct, print_time, whole_seconds};
 use super::appearance::{Disguise, disguises};
-use super::conformity::signature_faults;
+use super::conformity::{person_faults, signature_faults};
 use super::declaration::Declaration;
 use super::digest::Digest;
 use super::fault::Fault;
@@ -14,7 +14,7 @@ use super::register::{Entry, Register, Seen};
 use super::roster::Roster;
 use super::signature::{NAMESPACE, SignatureFault, Signer, SigningError};
 use super::statement::Statement;
-use super::verification::{Record, Verified};
+use super::verification::{Authority, Record, Verified};
 
 /// What is to be sealed: the statement, and the texts whose digests it carries.
 #[derive(Clone, Copy, Debug)]
@@ -211,12 +211,6 @@ pub fn declare(
 
 fn sign(record: String, meaning: Meaning, signing: &Signing<'_>) -> Result<Sealed, SealError> {
     let signer = signing.signer.clone();
-    if !signing.policy.authorises(signing.people, &signer, meaning) {
-        return Err(SealError::NotAllowed(Fault::NotAuthorised {
-            signer,
-            meaning,
-        }));
-    }
     let own = signing
         .registers
         .iter()
@@ -243,6 +237,15 @@ fn sign(record: String, meaning: Meaning, signing: &Signing<'_>) -> Result<Seale
         seen: seen.digest(),
         note: signing.note.cloned(),
     };
+    let authority = Authority {
+        roster: signing.roster,
+        policy: signing.policy,
+        people: signing.people,
+        now: act.time,
+    };
+    if let Some(fault) = person_faults(&act, &authority).into_iter().next() {
+        return Err(SealError::NotAllowed(fault));
+    }
     let signature = signing.key.sign(NAMESPACE, act.print().as_bytes())?;
     signature
         .verify(act.print().as_bytes(), signing.key.public_key())

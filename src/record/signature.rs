@@ -305,7 +305,7 @@ mod tests {
             .to_owned();
         let rewrapped = armour.replacen("U1NI", "U1NI\n", 1);
         for other in [
-            &armour[1..],
+            armour.trim_start_matches('-'),
             &format!("{armour}\n"),
             &rewrapped,
             armour.trim_end(),

@@ -1,5 +1,7 @@
 //! Results among each other: copies, labels that stand twice, what takes the place of what, what is made from what.
 
+use std::collections::{BTreeMap, BTreeSet};
+
 use super::act::{Meaning, SignedAct};
 use super::digest::Digest;
 use super::fault::{Fault, SourceFate};
@@ -35,12 +37,6 @@ impl Placed<'_> {
         statement.page.as_str() == self.page && statement.label.as_str() == self.label
     }
 
-    /// Whether this is the result that the other says it takes the place of.
-    fn is_replaced_by(&self, other: &Self) -> bool {
-        self.page == other.page
-            && replaced(other).is_some_and(|digest| digest == self.record.digest)
-    }
-
     fn has(&self, meaning: Meaning) -> bool {
         let mut acts = self.record.acts.iter().map(SignedAct::act);
         acts.any(|act| act.meaning == meaning)
@@ -52,77 +48,102 @@ fn replaced(placed: &Placed<'_>) -> Option<Digest> {
     Some(supersession.replaced.digest)
 }
 
+/// The results by what they are found by.
+struct Index<'a> {
+    by_digest: BTreeMap<Digest, Vec<Placed<'a>>>,
+    /// By page and by the digest that they take the place of.
+    successors: BTreeMap<(&'a str, Digest), Vec<Placed<'a>>>,
+}
+
+impl<'a> Index<'a> {
+    fn of(results: &[Placed<'a>]) -> Self {
+        let mut index = Self {
+            by_digest: BTreeMap::new(),
+            successors: BTreeMap::new(),
+        };
+        for placed in results {
+            let same = index.by_digest.entry(placed.record.digest).or_default();
+            same.push(*placed);
+            if let Some(digest) = replaced(placed) {
+                let others = index.successors.entry((placed.page, digest)).or_default();
+                others.push(*placed);
+            }
+        }
+        index
+    }
+
+    fn with_digest(&self, digest: Digest) -> &[Placed<'a>] {
+        self.by_digest.get(&digest).map_or(&[], Vec::as_slice)
+    }
+
+    fn successors_of(&self, placed: &Placed<'a>) -> &[Placed<'a>] {
+        let key = (placed.page, placed.record.digest);
+        self.successors.get(&key).map_or(&[], Vec::as_slice)
+    }
+}
+
 /// Examines every result against all others.
 pub(super) fn examine(results: &[Placed<'_>], findings: &mut Vec<Finding>) {
-    for (at, placed) in results.iter().enumerate() {
-        copies(placed, results, findings);
-        let earlier = results.iter().take(at);
-        let mut twins =
-            earlier.filter(|other| (other.page, other.label) == (placed.page, placed.label));
-        if twins.next().is_some() {
+    let index = Index::of(results);
+    let mut places = BTreeSet::new();
+    for placed in results {
+        if let Some(original) = original(placed, &index) {
+            findings.push(placed.finding(Part::Whole, Fault::CopiedResult { original }));
+        }
+        if !places.insert((placed.page, placed.label)) {
             findings.push(placed.finding(Part::Whole, Fault::DuplicateLabel));
         }
-        successors(placed, results, findings);
-        sources(placed, results, findings);
+        successors(placed, &index, findings);
+        sources(placed, &index, findings);
     }
 }
 
-fn copies(placed: &Placed<'_>, results: &[Placed<'_>], findings: &mut Vec<Finding>) {
-    let original = |other: &Placed<'_>| {
-        other.stands_as_signed() && other.record.digest == placed.record.digest
-    };
-    if !placed.stands_as_signed() && results.iter().any(original) {
-        let statement = &placed.record.statement;
-        let original = ResultName {
-            page: statement.page.clone(),
-            label: statement.label.clone(),
-        };
-        findings.push(placed.finding(Part::Whole, Fault::CopiedResult { original }));
-    }
+/// Where the result was signed, if it stands there still and this is another place.
+fn original(placed: &Placed<'_>, index: &Index<'_>) -> Option<ResultName> {
+    let mut same = index.with_digest(placed.record.digest).iter();
+    let copied = !placed.stands_as_signed() && same.any(Placed::stands_as_signed);
+    let statement = &placed.record.statement;
+    copied.then(|| ResultName {
+        page: statement.page.clone(),
+        label: statement.label.clone(),
+    })
 }
 
-fn successors(placed: &Placed<'_>, results: &[Placed<'_>], findings: &mut Vec<Finding>) {
-    let mut labels = results
-        .iter()
-        .filter(|other| placed.is_replaced_by(other))
-        .map(|other| other.record.statement.label.clone());
-    match (labels.next(), labels.next()) {
-        (Some(first), Some(second)) => {
+fn successors<'a>(placed: &Placed<'a>, index: &Index<'a>, findings: &mut Vec<Finding>) {
+    let label = |placed: &Placed<'_>| placed.record.statement.label.clone();
+    match index.successors_of(placed) {
+        [first, second, ..] => {
+            let (first, second) = (label(first), label(second));
             findings.push(placed.finding(Part::Whole, Fault::TwoSuccessors { first, second }));
         }
-        (Some(successor), None) if !placed.superseded => {
+        [one] if !placed.superseded => {
+            let successor = label(one);
             findings.push(placed.finding(Part::Whole, Fault::SupersessionNotMarked { successor }));
         }
-        (None, _) if placed.superseded => {
+        [] if placed.superseded => {
             findings.push(placed.finding(Part::Whole, Fault::SupersededWithoutSuccessor));
         }
         _ => {}
     }
-    if let Some(supersession) = &placed.record.statement.supersedes
-        && !results.iter().any(|other| other.is_replaced_by(placed))
-    {
-        let replaced = supersession.replaced.name.clone();
-        findings.push(placed.finding(Part::Record, Fault::SupersededMissing { replaced }));
+    if let Some(supersession) = &placed.record.statement.supersedes {
+        let mut old = index.with_digest(supersession.replaced.digest).iter();
+        if !old.any(|old| old.page == placed.page) {
+            let replaced = supersession.replaced.name.clone();
+            findings.push(placed.finding(Part::Record, Fault::SupersededMissing { replaced }));
+        }
     }
 }
 
-fn sources(placed: &Placed<'_>, results: &[Placed<'_>], findings: &mut Vec<Finding>) {
+fn sources<'a>(placed: &Placed<'a>, index: &Index<'a>, findings: &mut Vec<Finding>) {
     for used in &placed.record.statement.uses {
-        let mut found = results
-            .iter()
-            .filter(|other| other.record.digest == used.digest);
-        let fate = match found.next() {
+        let fate = match index.with_digest(used.digest).first() {
             None => SourceFate::Missing,
             Some(source) if source.has(Meaning::Withdrawn) => SourceFate::Withdrawn,
             Some(source) if source.has(Meaning::Rejected) => SourceFate::Rejected,
-            Some(source) => {
-                let amended =
-                    source.superseded || results.iter().any(|other| source.is_replaced_by(other));
-                if !amended {
-                    continue;
-                }
+            Some(source) if source.superseded || !index.successors_of(source).is_empty() => {
                 SourceFate::Amended
             }
+            Some(_) => continue,
         };
         let source_name = used.name.clone();
         findings.push(placed.finding(Part::Record, Fault::MadeFrom { source_name, fate }));

@@ -226,7 +226,7 @@ impl Check<'_> {
         for (bytes, place) in self.parts.acts.iter().zip(1..) {
             match SignedAct::parse(bytes) {
                 Ok(signed) => {
-                    self.act(Part::Act(place), &signed, statement.is_some());
+                    self.act(&Part::Act(place), &signed, statement.is_some());
                     acts.push(signed);
                 }
                 Err(ActError::Lines(error)) => {
@@ -242,7 +242,7 @@ impl Check<'_> {
         acts
     }
 
-    fn act(&mut self, part: Part, signed: &SignedAct, readable: bool) {
+    fn act(&mut self, part: &Part, signed: &SignedAct, readable: bool) {
         let act = signed.act();
         if let Some(record) = self.parts.record
             && readable
@@ -335,7 +335,7 @@ mod tests {
         for bit in [0x01_u8, 0x02, 0x20] {
             for at in 0..sealed.record.len() {
                 let mut page = page(&[&sealed]);
-                page.record = flipped(&sealed.record, at, bit);
+                page.record = Some(flipped(&sealed.record, at, bit));
                 let found = names(&laboratory.verify(&page).findings);
                 assert!(
                     of_record.iter().any(|name| found.contains(name)),
@@ -345,7 +345,7 @@ mod tests {
             let act = sealed.act.print();
             for at in 0..act.len() {
                 let mut page = page(&[&sealed]);
-                page.acts = flipped(&act, at, bit).into_iter().collect();
+                page.acts = vec![flipped(&act, at, bit)];
                 let found = names(&laboratory.verify(&page).findings);
                 let other = found == ["record-without-act"];
                 assert!(
@@ -356,10 +356,10 @@ mod tests {
         }
     }
 
-    fn flipped(text: &str, at: usize, bit: u8) -> Option<String> {
+    fn flipped(text: &str, at: usize, bit: u8) -> String {
         let mut bytes = text.as_bytes().to_vec();
         bytes[at] ^= bit;
-        Some(String::from_utf8(bytes).unwrap())
+        String::from_utf8(bytes).unwrap()
     }
 
     #[test]
