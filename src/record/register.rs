@@ -34,7 +34,6 @@ pub struct Register {
     signer: SignerName,
     entries: Vec<Entry>,
     faults: Vec<RegisterFault>,
-    ended: bool,
 }
 
 /// What is wrong with the text of a register. Lines count from 1.
@@ -134,7 +133,6 @@ impl Register {
             signer,
             entries: Vec::new(),
             faults: Vec::new(),
-            ended: true,
         }
     }
 
@@ -146,7 +144,6 @@ impl Register {
             return register;
         }
         let text = String::from_utf8_lossy(&with_line_feeds(bytes)).into_owned();
-        register.ended = text.ends_with('\n');
         register.read_fences(&text);
         let printed = register.print();
         if register.faults.is_empty() && printed != text {
@@ -236,14 +233,13 @@ impl Register {
         self.entries.iter().map(|entry| entry.act.act().time).max()
     }
 
-    /// The text to add at the end of the file for an entry, with LF.
+    /// The text to add at the end of a file without faults for an entry, with LF.
     #[must_use]
     pub fn addition(&self, entry: &Entry) -> String {
         if self.entries.is_empty() && self.faults.is_empty() {
             return format!("{}\n{}", heading(&self.signer), entry.print());
         }
-        let between = if self.ended { "\n" } else { "\n\n" };
-        format!("{between}{}", entry.print())
+        format!("\n{}", entry.print())
     }
 
     /// The register with the entry at its end.

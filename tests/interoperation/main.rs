@@ -2,6 +2,12 @@
 //!
 //! Where the tools are absent the trials are shown as ignored; where `CI` is set they fail.
 
+#![expect(
+    clippy::indexing_slicing,
+    clippy::unwrap_used,
+    reason = "a trial that cannot be set up fails, and says where"
+)]
+
 mod laboratory;
 mod shell;
 
