@@ -211,6 +211,20 @@ impl Register {
         entries.find(|entry| entry.act.digest() == digest)
     }
 
+    /// Whether a further act can follow: nothing is wrong with the text, each entry has the record and the list that its
+    /// act names, and the acts that it follows stand before it.
+    #[must_use]
+    pub fn is_sound(&self) -> bool {
+        let mut before = BTreeSet::new();
+        self.faults.is_empty()
+            && self.entries.iter().all(|entry| {
+                let act = entry.act.act();
+                let follows = act.previous.iter().all(|digest| before.contains(digest));
+                before.insert(entry.act.digest());
+                follows && entry.is_whole() && act.signer == self.signer
+            })
+    }
+
     /// Number and previous acts of the act to come.
     #[must_use]
     pub fn next(&self) -> Next {
@@ -266,6 +280,11 @@ impl Entry {
     #[must_use]
     pub fn statement(&self) -> Option<Statement> {
         Statement::parse(self.record.as_bytes()).ok()
+    }
+
+    fn is_whole(&self) -> bool {
+        let act = self.act.act();
+        Digest::of_lines(self.record.as_bytes()) == act.record && self.seen.digest() == act.seen
     }
 
     fn print(&self) -> String {
@@ -331,5 +350,20 @@ mod tests {
         let more = Register::parse(name("analyst"), format!("{text}\n").as_bytes());
         let line = text.lines().count() + 1;
         assert_eq!(more.faults(), [RegisterFault::Text { line }]);
+    }
+
+    #[test]
+    fn no_act_follows_a_register_with_something_missing_or_exchanged() {
+        let right = Register::parse(name("analyst"), written().as_bytes());
+        assert!(right.is_sound());
+        let mut without = right.clone();
+        without.entries.remove(0);
+        assert!(!without.is_sound());
+        let mut exchanged = right.clone();
+        exchanged.entries[1].record = right.entries[0].record.clone();
+        assert!(!exchanged.is_sound());
+        let mut unseen = right;
+        unseen.entries[1].seen = Seen::default();
+        assert!(!unseen.is_sound());
     }
 }

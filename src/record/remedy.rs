@@ -79,7 +79,7 @@ rows! {
     F::SupersededMissing { .. } => "superseded-missing", Failure, RESTORE;
     F::MadeFrom { .. } => "made-from-changed", Warning, "compute again with the result as it stands now, and amend";
     F::ClockRanBack { .. } => "clock-ran-back", Failure, INQUIRE;
-    F::TimeToCome { .. } => "time-to-come", Failure, "set the clocks right; ask the signer";
+    F::TimeToCome { .. } => "time-to-come", Warning, "set the clocks right; ask the signer";
     F::RequiredActMissing { .. } => "required-act-missing", Warning, COUNTERSIGN;
     F::Overdue { .. } => "overdue", Warning, COUNTERSIGN;
     F::OwnReview { .. } => "own-review", Warning, "have somebody else countersign the result";

@@ -109,7 +109,7 @@ pub enum SealError {
     /// The roster or the policy does not allow it.
     #[error("{0}")]
     NotAllowed(Fault),
-    /// The signer's register has a fault, so that the chain would go on from something unknown.
+    /// The signer's register is not in order, so that the chain would go on from something unknown.
     #[error("the register of {signer} is not in order")]
     Register {
         /// Whose.
@@ -217,7 +217,7 @@ fn sign(record: String, meaning: Meaning, signing: &Signing<'_>) -> Result<Seale
         .find(|register| *register.signer() == signer)
         .cloned()
         .unwrap_or_else(|| Register::empty(signer.clone()));
-    if !own.faults().is_empty() {
+    if !own.is_sound() {
         return Err(SealError::Register { signer });
     }
     for register in signing.registers {
