@@ -10,13 +10,17 @@ mod assumption;
 mod budget;
 mod carbon_dioxide;
 mod caution;
+mod comparison;
 mod composition;
 mod conclusion;
 mod dissociation;
+mod hand;
 mod mixing;
 mod model_choice;
 mod polyborate;
 mod recipe;
+mod shortcut;
+mod simulation;
 mod speciation;
 #[cfg(test)]
 mod specimen;
