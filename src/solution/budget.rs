@@ -33,7 +33,7 @@ impl Budget {
     /// The budget of independent contributions, with coverage factor `k`; standard and expanded uncertainty in the unit of the result.
     ///
     /// Source: JCGM 100:2008, 5.1.2 and, for the effective degrees of freedom, G.4.1 (Welch-Satterthwaite); recalled.
-    pub fn of(contributions: Vec<Contribution>, k: f64) -> Self {
+    pub fn of(contributions: &[Contribution], k: f64) -> Self {
         let part = |line: &Contribution| line.standard * line.sensitivity;
         let variance: f64 = contributions
             .iter()
@@ -90,7 +90,7 @@ pub(super) fn of(
     surroundings: &Surroundings,
 ) -> Budget {
     Budget::of(
-        contributions(bench, assembly, solved, surroundings),
+        &contributions(bench, assembly, solved, surroundings),
         COVERAGE_FACTOR,
     )
 }
@@ -267,7 +267,7 @@ mod tests {
         let length = 50_000_623.0;
         let third = 3.0_f64.sqrt();
         let budget = Budget::of(
-            vec![
+            &[
                 line(length, 25.0, 1.0, Some(18.0)),
                 line(215.0, 5.8, 1.0, Some(24.0)),
                 line(0.0, 3.9, 1.0, Some(5.0)),
@@ -285,11 +285,11 @@ mod tests {
 
     /// Relative contributions of a product: value times relative uncertainty.
     fn product(value: f64, parts: &[(f64, f64)]) -> Budget {
-        let lines = parts
+        let lines: Vec<Contribution> = parts
             .iter()
             .map(|(figure, standard)| line(*figure, *standard, value / figure, None))
             .collect();
-        Budget::of(lines, 2.0)
+        Budget::of(&lines, 2.0)
     }
 
     #[test]

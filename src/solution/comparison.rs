@@ -27,9 +27,10 @@ pub(super) fn of(
     let found = reading.ph.value().base();
     let difference = found - solved.certified.ph();
     let lines = budget::contributions(bench, assembly, solved, surroundings);
-    let computed = Budget::of(lines, COVERAGE_FACTOR).standard;
+    let computed = Budget::of(&lines, COVERAGE_FACTOR).standard;
     let read = reading.ph.measured.standard_uncertainty();
-    let expanded = COVERAGE_FACTOR * (computed * computed + read * read).sqrt();
+    let variance: f64 = [computed, read].iter().map(|u| u * u).sum();
+    let expanded = COVERAGE_FACTOR * variance.sqrt();
     let agrees = difference.abs() <= expanded;
     Some(Comparison {
         reading: reading.ph.measured.to_string(),

@@ -66,14 +66,14 @@ impl Trial<'_> {
             return name == ShortcutName::UnitActivityCoefficients;
         };
         match name {
-            ShortcutName::UnitActivityCoefficients => true,
-            ShortcutName::FirstStepOnly | ShortcutName::NextStepNeglected => {
-                case.pks.len() > 1 && name == ShortcutName::FirstStepOnly
-            }
-            ShortcutName::XNeglected
+            ShortcutName::FirstStepOnly => case.pks.len() > 1,
+            ShortcutName::UnitActivityCoefficients
+            | ShortcutName::XNeglected
             | ShortcutName::HendersonHasselbalch
             | ShortcutName::Ampholyte => true,
-            ShortcutName::SuccessiveApproximation | ShortcutName::WaterNeglected => false,
+            ShortcutName::SuccessiveApproximation
+            | ShortcutName::WaterNeglected
+            | ShortcutName::NextStepNeglected => false,
         }
     }
 
@@ -100,12 +100,11 @@ impl Trial<'_> {
     fn first_step(&self) -> Option<(f64, String)> {
         let case = self.case.as_ref()?;
         let ph = case.first_step()?;
-        let apart = match case.nature {
-            Nature::Acid => case.pk(1).zip(case.pk(0)).map(|(b, a)| b - a),
-            _ => {
-                let mut last = case.pks.iter().rev();
-                last.next().zip(last.next()).map(|(b, a)| b - a)
-            }
+        let apart = if case.nature == Nature::Acid {
+            case.pk(1).zip(case.pk(0)).map(|(b, a)| b - a)
+        } else {
+            let mut last = case.pks.iter().rev();
+            last.next().zip(last.next()).map(|(b, a)| b - a)
         };
         let condition = apart.map_or(
             "one step only: nothing is left out but water".to_owned(),

@@ -1,6 +1,6 @@
 //! Propagation of distributions by a seeded Monte Carlo simulation (JCGM 101), the same bytes for one seed on every platform.
 //!
-//! The generator is ChaCha with 12 rounds, its key the seed in little-endian bytes followed by zeros. Normal deviates come from pairs of
+//! The generator is `ChaCha` with 12 rounds, its key the seed in little-endian bytes followed by zeros. Normal deviates come from pairs of
 //! uniform ones by the Box-Muller transform (1958, Ann. Math. Stat. 29, 610; recalled); uniform ones are the upper 53 bits of a draw.
 
 use crate::equilibrium::elementary::{cos, ln};
