@@ -92,10 +92,10 @@ impl PageWork {
                     .into_iter()
                     .map(|fault| fault.in_page(excerpt)),
             );
-            let Some((label, span)) = reading.label else {
+            let Some((label, excerpt_span)) = reading.label else {
                 continue;
             };
-            let span = excerpt.in_page(span);
+            let span = excerpt.in_page(excerpt_span);
             if let Some(first) = labels.insert(label.to_string(), span) {
                 work.faults.push(
                     Diagnostic::error(
@@ -125,7 +125,11 @@ impl PageWork {
                         item.rendered = Some(rendered);
                         item.template = Some(template);
                     }
-                    Err(failure) => work.faults.push(failure.diagnostic(&reading.places, span)),
+                    Err(failure) => {
+                        let label = excerpt_span;
+                        work.faults
+                            .push(failure.diagnostic(&reading.places, label).in_page(excerpt));
+                    }
                 }
             }
             work.blocks.push(item);
@@ -176,16 +180,20 @@ enum Failure {
 
 impl Failure {
     /// The fault at the block's label, where no input is at fault alone.
-    fn diagnostic(self, _places: &Places, label: Span) -> Diagnostic {
+    fn diagnostic(self, places: &Places, label: Span) -> Diagnostic {
         match self {
-            Self::Unsolvable(error @ Unsolvable::ModelRange { .. }) => {
-                Diagnostic::error(Rule::ModelRange, label, error.to_string())
-            }
-            Self::Unsolvable(error @ Unsolvable::Unreachable { .. }) => {
-                Diagnostic::error(Rule::UnreachableTarget, label, error.to_string())
-            }
             Self::Unsolvable(error) => {
-                Diagnostic::error(Rule::Unsolvable, label, error.to_string())
+                let rule = match error {
+                    Unsolvable::BeyondModel { .. } => Rule::ModelRange,
+                    Unsolvable::Unreachable { .. }
+                    | Unsolvable::IonicStrengthUnreachable { .. } => Rule::UnreachableTarget,
+                    _ => Rule::Unsolvable,
+                };
+                let place = error
+                    .input()
+                    .and_then(|input| places.of(input))
+                    .unwrap_or(label);
+                Diagnostic::error(rule, place, error.to_string())
             }
             Self::Report(message) => Diagnostic::error(Rule::BadTemplate, label, message),
         }

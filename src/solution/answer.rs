@@ -40,7 +40,7 @@ pub struct Answer {
 /// Model and water at the temperature of the block.
 #[derive(Clone, Debug)]
 pub struct ModelFacts {
-    /// The model that was used; never `best`.
+    /// The model that was used; never [`ActivityChoice::Best`].
     pub activity: ActivityChoice,
     /// Why this one, where `best` was asked for.
     pub choice: Option<String>,
@@ -124,7 +124,7 @@ pub struct ComponentTotal {
     pub concentration: f64,
 }
 
-/// Shares of species and buffer capacity over a range of pH, at the activity coefficients of the state.
+/// Shares of species and buffer capacity over a range of pH, at the ionic strength of the state.
 #[derive(Clone, Debug, Default)]
 pub struct Distribution {
     /// The pH of each point, increasing.
@@ -394,6 +394,8 @@ pub struct BudgetLine {
     pub sensitivity: f64,
     /// Share of the combined variance, 0 to 1.
     pub share: f64,
+    /// Degrees of freedom, where given.
+    pub degrees_of_freedom: Option<f64>,
     /// Where the uncertainty comes from: stated, tolerance, replicates, constant's source, model.
     pub origin: String,
 }
@@ -486,6 +488,8 @@ pub struct ConstantsUsed {
     pub forms: Vec<Arc<Form>>,
     /// The pK of each step at the temperature of the block: ligand, step from 1, pK.
     pub pk_at_temperature: Vec<(String, usize, f64)>,
+    /// Further constants that entered, each a sentence part with its source: CO₂ solubility, polyborates.
+    pub further: Vec<String>,
 }
 
 /// A stated assumption and what it costs.

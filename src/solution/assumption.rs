@@ -1,200 +1,273 @@
-//! Stated assumptions, each with what it costs in pH where that can be computed.
+//! Stated assumptions, each with what it costs in pH.
 
-use crate::equilibrium::ActivityModel;
-use crate::problem::{Air, Origin};
+use crate::problem::{Air, Composition, Ingredient, MadeUp, Origin};
 use crate::solution::Unsolvable;
 use crate::solution::answer::Assumption;
-use crate::solution::budget::second_model;
-use crate::solution::solved::Solved;
-use crate::solution::tableau::Variation;
+use crate::solution::assembly::{Assembly, Solved};
+use crate::solution::conclusion::Bench;
+use crate::solution::dissociation::Route;
 
-/// Carbon dioxide of ordinary air, as a fraction (common practice: about 420 ppm outdoors).
-const ORDINARY_AIR: &str = "CO2 420 ppm";
-
-/// All assumptions of a solved liquid.
-pub(super) fn all(solved: &Solved<'_>) -> Result<Vec<Assumption>, Unsolvable> {
-    let mut found = vec![activity(solved)?];
-    if solved.variation.model != ActivityModel::Ideal {
-        found.push(unit_coefficients(solved)?);
-    }
-    found.push(temperature(solved)?);
-    found.push(scale(solved)?);
-    found.push(air(solved));
-    found.extend(ion_sizes(solved));
-    found.extend(defaults(solved));
-    Ok(found)
+/// pH of the same liquid under other surroundings, each computed in full.
+#[derive(Clone, Debug)]
+pub(super) struct Surroundings {
+    /// pH of the result.
+    pub(super) ph: f64,
+    /// Name of the second model and its pH.
+    pub(super) second_model: (&'static str, f64),
+    /// Change of pH with temperature in 1/K.
+    pub(super) ph_per_kelvin: f64,
+    /// pH in equilibrium with air of 420 ppm CO₂, or closed where the block says open.
+    pub(super) other_air: Option<f64>,
 }
 
-fn priced(statement: String, alternative: &str, ph: f64, solved: &Solved<'_>) -> Assumption {
-    Assumption {
-        statement,
-        alternative: Some((alternative.to_owned(), ph)),
-        cost: Some(ph - solved.solution.ph()),
-    }
-}
+/// Mole fraction of CO₂ in outdoor air that an open beaker is compared with.
+///
+/// Common practice; about the annual mean of the early 2020s.
+const OUTDOOR_AIR: f64 = 420e-6;
 
-fn activity(solved: &Solved<'_>) -> Result<Assumption, Unsolvable> {
-    let second = second_model(solved.variation.model);
-    let name = match second {
-        ActivityModel::DebyeHueckel => "debye-hueckel",
-        _ => "davies",
-    };
-    let ph = solved.ph_with_model(second)?;
-    let asked = solved.conditions.activity.value.name();
-    Ok(priced(
-        format!("Activity coefficients after the model {asked}."),
-        name,
-        ph,
-        solved,
-    ))
-}
+/// Volume that a mole of solute takes from the water of a litre, in L/mol; common practice, 0.02 to 0.04 for common salts.
+const SOLUTE_VOLUME: f64 = 0.03;
 
-fn unit_coefficients(solved: &Solved<'_>) -> Result<Assumption, Unsolvable> {
-    let ph = solved.ph_with_model(ActivityModel::Ideal)?;
-    Ok(priced(
-        "Activity coefficients are not neglected.".to_owned(),
-        "activity coefficients of 1",
-        ph,
-        solved,
-    ))
-}
+/// Contraction or expansion on mixing that additive volumes are tested with.
+const VOLUME_CHANGE: f64 = 0.005;
 
-fn temperature(solved: &Solved<'_>) -> Result<Assumption, Unsolvable> {
-    let t = solved.variation.temperature;
-    let other = if t + 1.0 <= 373.15 { t + 1.0 } else { t - 1.0 };
-    let ph = solved.ph_with(Variation {
-        temperature: other,
-        ..solved.variation
-    })?;
-    Ok(priced(
-        format!("The solution is at {:.2} °C throughout.", t - 273.15),
-        if other > t {
-            "1 °C warmer"
-        } else {
-            "1 °C colder"
-        },
-        ph,
-        solved,
-    ))
-}
-
-/// Molality from amount concentration by the density of water: what 1 % more or less water means.
-fn scale(solved: &Solved<'_>) -> Result<Assumption, Unsolvable> {
-    let sensitivities = solved.solution.sensitivities(&solved.tableau.system);
-    let by_ln: f64 = solved
-        .doses
-        .list
-        .iter()
-        .map(|dose| {
-            solved.ph_by_ln_dose(dose, &sensitivities.by_component, sensitivities.by_protons)
+impl Surroundings {
+    /// Computes them.
+    ///
+    /// # Errors
+    /// [`Unsolvable`] where one of them has no certified solution.
+    pub(super) fn of(
+        bench: &Bench<'_>,
+        assembly: &Assembly,
+        solved: &Solved,
+    ) -> Result<Self, Unsolvable> {
+        let setting = &assembly.setting;
+        let (name, model) = bench.chosen.second;
+        let second = assembly.under(&setting.with_model(model))?.stated_ph()?;
+        let other_air = match setting.carbon_dioxide {
+            None => Some(OUTDOOR_AIR),
+            Some(_) => None,
+        };
+        Ok(Self {
+            ph: solved.certified.ph(),
+            second_model: (name, second),
+            ph_per_kelvin: ph_per_kelvin(assembly)?,
+            other_air: assembly
+                .under(&setting.with_carbon_dioxide(other_air))?
+                .stated_ph()
+                .ok(),
         })
-        .sum();
-    let share = displaced(solved);
-    Ok(Assumption {
-        statement: format!(
-            "A litre of the solution holds as much water as a litre of water ({:.4} kg); the solutes take up roughly {:.1} % of it.",
-            solved.tableau.density,
-            100.0 * share
-        ),
-        alternative: Some((
-            "that much less water".to_owned(),
-            solved.solution.ph() + by_ln * share,
-        )),
-        cost: Some(by_ln * share),
-    })
-}
-
-/// Rough share of the volume that solutes take up: 30 cm³ for each mole of dissolved formula units (common practice for an order of magnitude).
-fn displaced(solved: &Solved<'_>) -> f64 {
-    let moles: f64 = solved
-        .doses
-        .list
-        .iter()
-        .map(|dose| dose.molality.to_f64())
-        .sum();
-    0.030 * moles
-}
-
-fn air(solved: &Solved<'_>) -> Assumption {
-    match &solved.conditions.air.value {
-        Air::Closed => Assumption {
-            statement: "Nothing is exchanged with the air.".to_owned(),
-            alternative: None,
-            cost: None,
-        },
-        Air::CarbonDioxide(_) | Air::CarbonDioxideFraction(_) => Assumption {
-            statement: format!(
-                "The solution has come to equilibrium with carbon dioxide of the air as stated (ordinary air: {ORDINARY_AIR})."
-            ),
-            alternative: None,
-            cost: None,
-        },
     }
 }
 
-fn ion_sizes(solved: &Solved<'_>) -> Option<Assumption> {
-    if solved.variation.model != ActivityModel::DebyeHueckel {
-        return None;
-    }
-    let mut missing: Vec<&str> = Vec::new();
-    for place in &solved.tableau.ligands {
-        for (state, name) in place.ligand.states.iter().enumerate() {
-            let sized = place
-                .ligand
-                .ion_sizes
-                .get(state)
-                .copied()
-                .flatten()
-                .is_some();
-            if !sized && place.ligand.state_charge(state) != 0 {
-                missing.push(name);
-            }
-        }
-    }
-    missing.extend(
-        solved
-            .tableau
-            .ions
-            .iter()
-            .filter(|place| place.ion.ion_size.is_none())
-            .map(|place| place.ion.symbol.as_str()),
+/// Change of pH with temperature in 1/K, by a central difference over 1 K, one-sided at the ends of the range of liquid water.
+pub(super) fn ph_per_kelvin(assembly: &Assembly) -> Result<f64, Unsolvable> {
+    let setting = &assembly.setting;
+    let lower = (setting.temperature - 0.5).max(273.15);
+    let upper = (setting.temperature + 0.5).min(373.15);
+    let ph_at = |temperature: f64| assembly.under(&setting.at(temperature))?.stated_ph();
+    Ok((ph_at(upper)? - ph_at(lower)?) / (upper - lower))
+}
+
+/// The assumptions of a result.
+///
+/// # Errors
+/// [`Unsolvable`] where an alternative has no certified solution.
+pub(super) fn list(
+    bench: &Bench<'_>,
+    assembly: &Assembly,
+    surroundings: &Surroundings,
+    liquid: &Composition,
+) -> Result<Vec<Assumption>, Unsolvable> {
+    let cost = |statement: String, alternative: &str, ph: Option<f64>| Assumption {
+        statement,
+        alternative: ph.map(|ph| (alternative.to_owned(), ph)),
+        cost: ph.map(|ph| ph - surroundings.ph),
+    };
+    let mut list = vec![
+        temperature(bench, surroundings, &cost),
+        model(bench, surroundings, &cost),
+        air(bench, surroundings, &cost),
+    ];
+    list.extend(molality(assembly, &cost));
+    let open = matches!(
+        bench.statement.conditions.air.value,
+        Air::CarbonDioxideFraction(_)
     );
-    (!missing.is_empty()).then(|| Assumption {
-        statement: format!("Ion size 0.4 nm assumed for {}.", missing.join(", ")),
+    if let Some(pressure) = assembly.setting.carbon_dioxide.filter(|_| open) {
+        let lower = assembly.setting.with_carbon_dioxide(Some(pressure * 0.97));
+        list.push(cost(
+                "The mole fraction of CO₂ is taken at one standard atmosphere, without the water vapour's share."
+                    .to_owned(),
+                "at a pressure lower by 3 %",
+                assembly.under(&lower)?.stated_ph().ok(),
+            ));
+    }
+    list.extend(constants_temperature(assembly, &cost));
+    list.extend(conditional(assembly, &cost));
+    if has_sum(liquid) {
+        let mut values = assembly.stated();
+        if let Some(density) = values.first_mut() {
+            *density = *density * (1.0 - VOLUME_CHANGE);
+        }
+        list.push(cost(
+            "Volumes of the portions are additive.".to_owned(),
+            "the mixture 0.5 % smaller",
+            assembly
+                .solve(&values)
+                .ok()
+                .map(|solved| solved.certified.ph()),
+        ));
+    }
+    list.push(Assumption {
+        statement: "Ion pairs are not counted: the constants were extrapolated without them."
+            .to_owned(),
         alternative: None,
         cost: None,
-    })
+    });
+    Ok(list)
 }
 
-/// What the block did not state.
-fn defaults(solved: &Solved<'_>) -> Vec<Assumption> {
-    let conditions = solved.conditions;
-    let origins = [
-        ("temperature", conditions.temperature.origin),
-        ("activity model", conditions.activity.origin),
-        ("air", conditions.air.origin),
-    ];
-    let from = |origin: Origin| {
-        let names: Vec<&str> = origins
-            .iter()
-            .filter(|(_, o)| *o == origin)
-            .map(|(name, _)| *name)
-            .collect();
-        names.join(", ")
-    };
-    let mut found = Vec::new();
-    for (origin, source) in [
-        (Origin::Notebook, "the notebook's settings"),
-        (Origin::Program, "the program's defaults"),
-    ] {
-        let names = from(origin);
-        if !names.is_empty() {
-            found.push(Assumption {
-                statement: format!("Not stated in the block, taken from {source}: {names}."),
-                alternative: None,
-                cost: None,
-            });
-        }
+type Cost<'a> = dyn Fn(String, &str, Option<f64>) -> Assumption + 'a;
+
+fn origin(origin: Origin) -> &'static str {
+    match origin {
+        Origin::Block => "stated",
+        Origin::Notebook => "assumed: the notebook's setting",
+        Origin::Program => "assumed: the program's default",
     }
-    found
+}
+
+fn temperature(bench: &Bench<'_>, surroundings: &Surroundings, cost: &Cost<'_>) -> Assumption {
+    let stated = &bench.statement.conditions.temperature;
+    cost(
+        format!(
+            "The temperature is {} ({}).",
+            stated.value.measured,
+            origin(stated.origin)
+        ),
+        "1 K warmer",
+        Some(surroundings.ph + surroundings.ph_per_kelvin),
+    )
+}
+
+fn model(bench: &Bench<'_>, surroundings: &Surroundings, cost: &Cost<'_>) -> Assumption {
+    let (name, ph) = surroundings.second_model;
+    cost(
+        format!(
+            "Activity coefficients follow the model `{}` ({}).",
+            bench.chosen.choice.name(),
+            origin(bench.statement.conditions.activity.origin)
+        ),
+        name,
+        Some(ph),
+    )
+}
+
+fn air(bench: &Bench<'_>, surroundings: &Surroundings, cost: &Cost<'_>) -> Assumption {
+    let air = &bench.statement.conditions.air;
+    let (statement, alternative) = match &air.value {
+        Air::Closed => (
+            "The solution is closed to the air".to_owned(),
+            "in equilibrium with air of 420 ppm CO₂",
+        ),
+        Air::CarbonDioxide(pressure) => (
+            format!(
+                "The solution is in equilibrium with CO₂ at {}",
+                pressure.measured
+            ),
+            "closed to the air",
+        ),
+        Air::CarbonDioxideFraction(fraction) => (
+            format!(
+                "The solution is in equilibrium with air of {} CO₂",
+                fraction.measured
+            ),
+            "closed to the air",
+        ),
+    };
+    cost(
+        format!("{statement} ({}).", origin(air.origin)),
+        alternative,
+        surroundings.other_air,
+    )
+}
+
+/// Molality is amount concentration divided by the density of water; tested with water displaced by the solutes.
+fn molality(assembly: &Assembly, cost: &Cost<'_>) -> Option<Assumption> {
+    let mut values = assembly.stated();
+    let worked = assembly.recipe.tape.evaluate(&values);
+    let solutes: f64 = assembly
+        .parts
+        .iter()
+        .filter_map(|part| Some(worked.at(part.concentration?).to_f64()))
+        .sum();
+    let displaced = SOLUTE_VOLUME * solutes;
+    if !(displaced > 0.0 && displaced < 0.5) {
+        return None;
+    }
+    if let Some(density) = values.first_mut() {
+        *density = *density * (1.0 - displaced);
+    }
+    let ph = assembly
+        .solve(&values)
+        .ok()
+        .map(|solved| solved.certified.ph());
+    Some(cost(
+        format!(
+            "Molality is amount concentration divided by the density of water, {:.5} kg/L.",
+            assembly.density
+        ),
+        &format!("water displaced by the solutes, {:.2} %", 100.0 * displaced),
+        ph,
+    ))
+}
+
+/// What it would cost to leave the constants as they are at their own temperature.
+fn constants_temperature(assembly: &Assembly, cost: &Cost<'_>) -> Option<Assumption> {
+    let moved = |route: Route| !matches!(route, Route::OwnTemperature | Route::Unchanged);
+    if !assembly.pks.iter().any(|pk| moved(pk.found.route)) {
+        return None;
+    }
+    let own = assembly.with_pks(|pk| {
+        let stated = pk.ligand.steps.get(pk.step);
+        let stated = stated.map_or(pk.found.value, |step| step.preferred.pk.to_f64());
+        stated + pk.found.to_zero_ionic_strength
+    });
+    Some(cost(
+        "The constants are brought to the temperature by their published equation, or by enthalpy and heat capacity."
+            .to_owned(),
+        "constants as at their own temperature",
+        assembly.ph_in(&own).ok(),
+    ))
+}
+
+/// What it would cost to use conditional constants as they stand.
+fn conditional(assembly: &Assembly, cost: &Cost<'_>) -> Option<Assumption> {
+    let converted = |change: f64| change.abs() > 0.0;
+    let names: Vec<String> = assembly
+        .pks
+        .iter()
+        .filter(|pk| converted(pk.found.to_zero_ionic_strength))
+        .map(|pk| format!("pK{} of {}", pk.step + 1, pk.ligand.name))
+        .collect();
+    if names.is_empty() {
+        return None;
+    }
+    let as_stated = assembly.with_pks(|pk| pk.found.value - pk.found.to_zero_ionic_strength);
+    Some(cost(
+        format!(
+            "Conditional constants, taken as quotients of concentrations, are brought to zero ionic strength with the block's model: {}.",
+            names.join(", ")
+        ),
+        "taken as thermodynamic constants",
+        assembly.ph_in(&as_stated).ok(),
+    ))
+}
+
+fn has_sum(composition: &Composition) -> bool {
+    matches!(composition.made_up, MadeUp::SumOfPortions)
+        || composition.ingredients.iter().any(|ingredient| {
+            matches!(ingredient, Ingredient::Solution(portion) if has_sum(&portion.composition))
+        })
 }

@@ -1,34 +1,27 @@
-//! The uncertainty budget: exact sensitivities, standard uncertainties, and their sum in squares.
-//!
-//! Source: JCGM 100:2008, 5.1.2 (law of propagation) and G.4.1 (Welch-Satterthwaite); recalled.
+//! The uncertainty budget of a pH, from exact derivatives.
 
-use crate::equilibrium::ActivityModel;
 use crate::problem::InputId;
-use crate::quantity::{Spread, Unit};
-use crate::solution::Unsolvable;
 use crate::solution::answer::{Budget, BudgetLine};
-use crate::solution::dose::InputFacts;
-use crate::solution::solved::Solved;
-use crate::solution::tableau::Variation;
-use std::collections::BTreeMap;
+use crate::solution::assembly::{Assembly, Solved};
+use crate::solution::assumption::Surroundings;
+use crate::solution::conclusion::Bench;
+use crate::solution::recipe::Distribution;
+use crate::solution::simulation::Added;
 
-/// Coverage factor of the expanded uncertainty: about 95 % (common practice).
-const K: f64 = 2.0;
-
-/// One contribution to a combined uncertainty, of whatever quantity.
+/// One quantity that a result depends on, with its uncertainty.
 #[derive(Clone, Debug)]
 pub struct Contribution {
     /// What it is, for people.
     pub what: String,
     /// The input, where it is one.
     pub input: Option<InputId>,
-    /// Value as written.
+    /// Its value as written.
     pub value: String,
     /// Standard uncertainty in `unit`.
     pub standard: f64,
-    /// Unit of value and uncertainty.
+    /// Unit.
     pub unit: String,
-    /// Derivative of the result by this quantity, in units of the result by `unit`.
+    /// Sensitivity coefficient: change of the result per `unit`.
     pub sensitivity: f64,
     /// Degrees of freedom, where given.
     pub degrees_of_freedom: Option<f64>,
@@ -36,197 +29,351 @@ pub struct Contribution {
     pub origin: String,
 }
 
-/// Combined standard uncertainty in the unit of the result, and effective degrees of freedom where any contribution has some.
-pub fn combined(contributions: &[Contribution]) -> (f64, Option<f64>) {
-    let part = |contribution: &Contribution| contribution.sensitivity * contribution.standard;
-    let variance: f64 = contributions.iter().map(|c| part(c) * part(c)).sum();
-    let denominator: f64 = contributions
-        .iter()
-        .filter_map(|c| Some(part(c) * part(c) * part(c) * part(c) / c.degrees_of_freedom?))
-        .sum();
-    let effective = (denominator > 0.0).then(|| variance * variance / denominator);
-    (variance.sqrt(), effective)
-}
-
-/// The budget of contributions, largest share first.
-pub(super) fn of(contributions: Vec<Contribution>) -> Budget {
-    let (standard, effective_degrees_of_freedom) = combined(&contributions);
-    let mut lines: Vec<BudgetLine> = contributions
-        .into_iter()
-        .map(|c| {
-            let part = c.sensitivity * c.standard;
-            BudgetLine {
-                share: if standard > 0.0 {
-                    part * part / (standard * standard)
-                } else {
-                    0.0
-                },
-                what: c.what,
-                input: c.input,
-                value: c.value,
-                standard: c.standard,
-                unit: c.unit,
-                sensitivity: c.sensitivity,
-                origin: c.origin,
+impl Budget {
+    /// The budget of independent contributions, with coverage factor `k`; standard and expanded uncertainty in the unit of the result.
+    ///
+    /// Source: JCGM 100:2008, 5.1.2 and, for the effective degrees of freedom, G.4.1 (Welch-Satterthwaite); recalled.
+    pub fn of(contributions: &[Contribution], k: f64) -> Self {
+        let part = |line: &Contribution| line.standard * line.sensitivity;
+        let variance: f64 = contributions
+            .iter()
+            .map(|line| part(line) * part(line))
+            .sum();
+        let fourth: f64 = contributions
+            .iter()
+            .filter_map(|line| {
+                let square = part(line) * part(line);
+                Some(square * square / line.degrees_of_freedom?)
+            })
+            .sum();
+        let share = |line: &Contribution| {
+            if variance > 0.0 {
+                part(line) * part(line) / variance
+            } else {
+                0.0
             }
-        })
-        .collect();
-    lines.sort_by(|a, b| {
-        b.share
-            .total_cmp(&a.share)
-            .then_with(|| a.what.cmp(&b.what))
-    });
-    Budget {
-        lines,
-        standard,
-        effective_degrees_of_freedom,
-        k: K,
-        expanded: K * standard,
-    }
-}
-
-/// Everything that makes the pH of a solved liquid uncertain.
-pub(super) fn contributions(solved: &Solved<'_>) -> Result<Vec<Contribution>, Unsolvable> {
-    let sensitivities = solved.solution.sensitivities(&solved.tableau.system);
-    let mut by_input: BTreeMap<&InputId, f64> = BTreeMap::new();
-    for dose in &solved.doses.list {
-        let by_ln =
-            solved.ph_by_ln_dose(dose, &sensitivities.by_component, sensitivities.by_protons);
-        for effect in &dose.effects {
-            *by_input.entry(&effect.id).or_default() += by_ln * effect.relative;
+        };
+        let mut lines: Vec<BudgetLine> = contributions
+            .iter()
+            .map(|line| BudgetLine {
+                what: line.what.clone(),
+                input: line.input.clone(),
+                value: line.value.clone(),
+                standard: line.standard,
+                unit: line.unit.clone(),
+                sensitivity: line.sensitivity,
+                share: share(line),
+                degrees_of_freedom: line.degrees_of_freedom,
+                origin: line.origin.clone(),
+            })
+            .collect();
+        lines.sort_by(|a, b| b.share.total_cmp(&a.share));
+        let standard = variance.sqrt();
+        Self {
+            lines,
+            standard,
+            effective_degrees_of_freedom: (fourth > 0.0).then(|| variance * variance / fourth),
+            k,
+            expanded: k * standard,
         }
     }
-    let mut found: Vec<Contribution> = by_input
-        .into_iter()
-        .filter_map(|(id, sensitivity)| {
-            let facts = solved.doses.inputs.get(id)?;
-            (facts.standard > 0.0).then(|| of_input(id, facts, sensitivity))
+}
+
+/// The coverage factor of every expanded uncertainty.
+const COVERAGE_FACTOR: f64 = 2.0;
+
+/// The budget of the pH of a solved assembly.
+pub(super) fn of(
+    bench: &Bench<'_>,
+    assembly: &Assembly,
+    solved: &Solved,
+    surroundings: &Surroundings,
+) -> Budget {
+    Budget::of(
+        &contributions(bench, assembly, solved, surroundings),
+        COVERAGE_FACTOR,
+    )
+}
+
+/// Inputs, molar masses, constants, temperature and model, each with its uncertainty; quantities without one are left out.
+pub(super) fn contributions(
+    bench: &Bench<'_>,
+    assembly: &Assembly,
+    solved: &Solved,
+    surroundings: &Surroundings,
+) -> Vec<Contribution> {
+    let (gradient, sensitivities) = assembly.gradient(solved);
+    let mut lines: Vec<Contribution> = assembly
+        .recipe
+        .variables
+        .iter()
+        .zip(&gradient)
+        .filter(|(variable, _)| variable.standard > 0.0)
+        .map(|(variable, by)| Contribution {
+            what: variable.what.clone(),
+            input: variable.input.clone(),
+            value: variable.written.clone(),
+            standard: variable.standard / variable.base_per_unit,
+            unit: variable.unit.clone(),
+            sensitivity: by * variable.base_per_unit,
+            degrees_of_freedom: variable.degrees_of_freedom,
+            origin: variable.origin.to_owned(),
         })
         .collect();
-    found.extend(of_constants(solved, &sensitivities.by_lg_beta));
-    found.extend(of_temperature(solved)?);
-    found.push(of_model(solved)?);
-    Ok(found)
-}
-
-fn of_input(id: &InputId, facts: &InputFacts, by_base: f64) -> Contribution {
-    // One unit as written is so many base units.
-    let one = facts
-        .unit
-        .difference_to_base(crate::quantity::Decimal::whole(1));
-    Contribution {
-        what: id.to_string(),
-        input: Some(id.clone()),
-        value: facts.written.clone(),
-        standard: facts.standard / one,
-        unit: facts.unit.symbol().to_owned(),
-        sensitivity: by_base * one,
-        degrees_of_freedom: facts.degrees_of_freedom,
-        origin: match facts.spread {
-            Some(Spread::Triangular) => "tolerance, triangular",
-            Some(Spread::Rectangular) => "rectangular",
-            Some(Spread::Replicates) => "replicates",
-            Some(Spread::Standard) if facts.unit == Unit::GramPerMole => "atomic weights",
-            Some(Spread::Standard | Spread::Expanded { .. }) | None => "as stated",
-        }
-        .to_owned(),
-    }
-}
-
-/// Published uncertainties of the constants, taken as standard uncertainties.
-fn of_constants(solved: &Solved<'_>, by_lg_beta: &[f64]) -> Vec<Contribution> {
-    let mut found = Vec::new();
-    for place in &solved.tableau.ligands {
-        for (index, step) in place.ligand.steps.iter().enumerate() {
-            let Some(uncertainty) = step.preferred.uncertainty else {
-                continue;
-            };
-            // pK of a step is part of lg beta of every state that has not yet lost the proton of that step.
-            let sensitivity = place
-                .species
-                .iter()
-                .take(index + 1)
-                .filter_map(|species| by_lg_beta.get(species.place()))
-                .sum();
-            found.push(Contribution {
-                what: format!("pK{} of {}", index + 1, place.ligand.name),
+    for pk in &assembly.pks {
+        let standard = Assembly::pk_standard(pk);
+        if standard > 0.0 {
+            lines.push(Contribution {
+                what: format!("pK{} of {}", pk.step + 1, pk.ligand.name),
                 input: None,
-                value: step.preferred.pk.to_string(),
-                standard: uncertainty.to_f64(),
+                value: format!("{:.4}", pk.found.value),
+                standard,
                 unit: String::new(),
-                sensitivity,
+                sensitivity: Assembly::by_pk(pk, &sensitivities),
                 degrees_of_freedom: None,
-                origin: "published with the constant, taken as a standard uncertainty".to_owned(),
+                origin: "the constant's source, taken as standard".to_owned(),
             });
         }
     }
-    found
-}
-
-/// The temperature, where its uncertainty is stated: by a difference of 0.1 K, for everything depends on it.
-fn of_temperature(solved: &Solved<'_>) -> Result<Option<Contribution>, Unsolvable> {
-    const STEP: f64 = 0.1;
-    let input = &solved.conditions.temperature.value;
-    let standard = input.measured.standard_uncertainty();
-    if standard <= 0.0 {
-        return Ok(None);
+    let temperature = &bench.statement.conditions.temperature.value;
+    let standard = temperature.measured.standard_uncertainty();
+    if standard > 0.0 {
+        lines.push(Contribution {
+            what: temperature.id.to_string(),
+            input: Some(temperature.id.clone()),
+            value: temperature.measured.to_string(),
+            standard,
+            unit: "K".to_owned(),
+            sensitivity: surroundings.ph_per_kelvin,
+            degrees_of_freedom: temperature.measured.degrees_of_freedom(),
+            origin: "stated".to_owned(),
+        });
     }
-    let t = solved.variation.temperature;
-    let (low, high) = ((t - STEP).max(273.15), (t + STEP).min(373.15));
-    let at = |temperature: f64| {
-        solved.ph_with(Variation {
-            temperature,
-            ..solved.variation
-        })
-    };
-    Ok(Some(Contribution {
-        what: "temperature".to_owned(),
-        input: Some(input.id.clone()),
-        value: input.measured.to_string(),
-        standard,
-        unit: "K".to_owned(),
-        sensitivity: (at(high)? - at(low)?) / (high - low),
-        degrees_of_freedom: input.measured.degrees_of_freedom(),
-        origin: "as stated".to_owned(),
-    }))
+    lines.extend(model_lines(bench, solved, surroundings));
+    lines
 }
 
-/// The error of the activity model and of the constants' conventions together.
+/// What a simulation adds to the pH of each draw: temperature and model, which no input of the recipe carries.
+pub(super) fn added(bench: &Bench<'_>, solved: &Solved, surroundings: &Surroundings) -> Vec<Added> {
+    let temperature = &bench.statement.conditions.temperature.value.measured;
+    let mut added = vec![Added {
+        standard: temperature.standard_uncertainty() * surroundings.ph_per_kelvin,
+        distribution: Distribution::Normal,
+    }];
+    added.extend(
+        model_lines(bench, solved, surroundings)
+            .into_iter()
+            .map(|line| Added {
+                standard: line.standard,
+                distribution: if line.origin == MODEL {
+                    Distribution::Normal
+                } else {
+                    Distribution::Rectangular
+                },
+            }),
+    );
+    added.retain(|added| added.standard.abs() > 0.0);
+    added
+}
+
+/// Where the model's own error comes from, in a budget.
+const MODEL: &str = "model";
+
+/// Standard uncertainty in pH of the models against the primary pH standards at I up to 0.1 mol/kg: at 25 °C, and over 0 to 50 °C.
 ///
-/// Up to 0.1 mol/kg: the root mean square distance from the primary pH standards that the program's tests measure, 0.008 at 25 °C and 0.010 from 0
-/// to 50 °C. Above: at least that, and the distance of a second model.
-fn of_model(solved: &Solved<'_>) -> Result<Contribution, Unsolvable> {
-    let celsius = solved.variation.temperature - 273.15;
-    let floor = if (celsius - 25.0).abs() < 0.5 {
-        0.008
+/// Source: our own comparison with the primary standards of Buck et al. (2002), Pure Appl. Chem. 74, 2169.
+const MODEL_AT_25: f64 = 0.008;
+const MODEL_0_TO_50: f64 = 0.010;
+
+/// Beyond 50 °C: twice that, by judgement; the standards there are few.
+const MODEL_BEYOND: f64 = 0.020;
+
+/// Ionic strength in mol/kg up to which those figures hold.
+const MODEL_RANGE: f64 = 0.1;
+
+/// The model's own error, and above 0.1 mol/kg the difference between two models, as half width of a rectangular distribution.
+fn model_lines(
+    bench: &Bench<'_>,
+    solved: &Solved,
+    surroundings: &Surroundings,
+) -> Vec<Contribution> {
+    let celsius = bench.setting.temperature - 273.15;
+    let standard = if (celsius - 25.0).abs() <= 1.0 {
+        MODEL_AT_25
+    } else if (0.0..=50.0).contains(&celsius) {
+        MODEL_0_TO_50
     } else {
-        0.010
+        MODEL_BEYOND
     };
-    let second = solved.ph_with_model(second_model(solved.variation.model))?;
-    let distance = (second - solved.solution.ph()).abs();
-    let outside =
-        solved.solution.ionic_strength() > 0.1 || solved.variation.model == ActivityModel::Ideal;
-    let (standard, origin) = if outside && distance > floor {
-        (distance, "distance of a second activity model")
-    } else {
-        (floor, "distance from primary pH standards")
-    };
-    Ok(Contribution {
-        what: "activity model".to_owned(),
+    let line = |what: String, value: String, standard: f64, origin: &str| Contribution {
+        what,
         input: None,
-        value: solved.conditions.activity.value.name().to_owned(),
+        value,
         standard,
-        unit: "pH".to_owned(),
+        unit: String::new(),
         sensitivity: 1.0,
         degrees_of_freedom: None,
         origin: origin.to_owned(),
-    })
+    };
+    let mut lines = vec![line(
+        "activity model and constants against the primary pH standards".to_owned(),
+        bench.chosen.choice.name().to_owned(),
+        standard,
+        MODEL,
+    )];
+    let (second, ph) = &surroundings.second_model;
+    let difference = (ph - solved.certified.ph()).abs();
+    let ideal = bench.chosen.choice == crate::problem::ActivityChoice::Ideal;
+    if (solved.certified.ionic_strength() > MODEL_RANGE || ideal) && difference > 0.0 {
+        lines.push(line(
+            format!(
+                "difference between the models {} and {second}",
+                bench.chosen.choice.name()
+            ),
+            format!("{difference:.4}"),
+            difference / 3.0_f64.sqrt(),
+            "model, half width of a rectangular distribution",
+        ));
+    }
+    lines
 }
 
-/// The model that another one is held against.
-pub(super) fn second_model(model: ActivityModel) -> ActivityModel {
-    match model {
-        ActivityModel::Davies => ActivityModel::DebyeHueckel,
-        _ => ActivityModel::Davies,
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::problem::ContentAmount;
+    use crate::problem::{Composition, MadeUp};
+    use crate::quantity::Unit;
+    use crate::solution::solve;
+    use crate::solution::specimen::{content, input, speciation, uncertain};
+
+    fn line(value: f64, standard: f64, sensitivity: f64, dof: Option<f64>) -> Contribution {
+        Contribution {
+            what: String::new(),
+            input: None,
+            value: value.to_string(),
+            standard,
+            unit: String::new(),
+            sensitivity,
+            degrees_of_freedom: dof,
+            origin: String::new(),
+        }
+    }
+
+    #[test]
+    fn end_gauge_of_the_guide() {
+        // JCGM 100:2008, annex H.1: u = 32 nm within 0.5, effective degrees of freedom 16 within 1 (printed figures are rounded; read and
+        // recalled). ls = 50 000 623 nm; thermal terms enter through ls.
+        let length = 50_000_623.0;
+        let third = 3.0_f64.sqrt();
+        let budget = Budget::of(
+            &[
+                line(length, 25.0, 1.0, Some(18.0)),
+                line(215.0, 5.8, 1.0, Some(24.0)),
+                line(0.0, 3.9, 1.0, Some(5.0)),
+                line(0.0, 6.7, 1.0, Some(8.0)),
+                line(0.0, 1.0e-6 / third, 0.1 * length, Some(50.0)),
+                line(0.0, 0.05 / third, -11.5e-6 * length, Some(2.0)),
+            ],
+            2.92,
+        );
+        assert!((budget.standard - 32.0).abs() <= 0.5, "{}", budget.standard);
+        let dof = budget.effective_degrees_of_freedom.unwrap();
+        assert!((dof - 16.0).abs() <= 1.0, "{dof}");
+        assert!((budget.expanded - 93.0).abs() <= 1.5, "{}", budget.expanded);
+    }
+
+    /// Relative contributions of a product: value times relative uncertainty.
+    fn product(value: f64, parts: &[(f64, f64)]) -> Budget {
+        let lines: Vec<Contribution> = parts
+            .iter()
+            .map(|(figure, standard)| line(*figure, *standard, value / figure, None))
+            .collect();
+        Budget::of(&lines, 2.0)
+    }
+
+    #[test]
+    fn examples_of_analytical_chemistry() {
+        // EURACHEM/CITAC QUAM, examples A1 to A3; unrounded figures, each with the tolerance of its rounding; read.
+        let (r3, r6) = (3.0_f64.sqrt(), 6.0_f64.sqrt());
+        let root = |parts: &[f64]| parts.iter().map(|u| u * u).sum::<f64>().sqrt();
+        let flask = root(&[0.1 / r6, 0.02, 0.084 / r3]);
+        let a1 = product(
+            1002.7,
+            &[(0.9999, 0.0001 / r3), (100.28, 0.05), (100.0, flask)],
+        );
+        assert!((a1.standard - 0.835_199).abs() <= 0.0005, "{}", a1.standard);
+        let weighing = root(&[0.000_15 / r3, 0.000_15 / r3]);
+        let burette = root(&[0.03 / r6, 0.006]);
+        let a2 = product(
+            0.102_136_159_706,
+            &[
+                (1.0, 0.0005),
+                (0.3888, weighing),
+                (1.0, 0.0005 / r3),
+                (204.2212, 0.0038),
+                (18.64, burette),
+            ],
+        );
+        assert!(
+            (a2.standard - 0.000_100_500_722).abs() <= 1e-7,
+            "{}",
+            a2.standard
+        );
+        let a3 = product(
+            0.101_39,
+            &[
+                (1.0, 0.001),
+                (0.3888, weighing),
+                (1.0, 0.0005 / r3),
+                (14.89, root(&[0.03 / r6, 0.0126 / r3])),
+                (18.64, root(&[0.03 / r6, 0.015_96 / r3])),
+                (204.2212, 0.0038),
+                (15.0, root(&[0.02 / r6, 0.0126 / r3])),
+            ],
+        );
+        assert!((a3.standard - 0.000_184_3).abs() <= 5e-7, "{}", a3.standard);
+    }
+
+    fn weighed(mass: &str, volume: &str) -> Composition {
+        Composition {
+            made_up: MadeUp::To(uncertain("volume", volume, "0.001", Unit::Litre)),
+            ingredients: vec![
+                content(
+                    "sodium dihydrogen phosphate dihydrate",
+                    ContentAmount::Mass(uncertain("mass", mass, "0.01", Unit::Gram)),
+                ),
+                content(
+                    "disodium hydrogen phosphate",
+                    ContentAmount::Concentration(input("base", "0.030", Unit::MolePerLitre)),
+                ),
+            ],
+        }
+    }
+
+    #[test]
+    fn sensitivities_are_the_derivatives() {
+        let answer = solve(&speciation(weighed("3.9003", "1.000"), "25")).unwrap();
+        let of = |what: &str| {
+            let budget = answer.budget.as_ref().unwrap();
+            let line = budget.lines.iter().find(|line| line.what == what);
+            line.unwrap().sensitivity
+        };
+        let ph = |mass: &str, volume: &str| {
+            let answer = solve(&speciation(weighed(mass, volume), "25"));
+            answer.unwrap().state.ph
+        };
+        // Richardson's extrapolation of central differences with steps h and 2 h; error of the order of h⁴.
+        let richardson = |one: f64, two: f64| (4.0 * one - two) / 3.0;
+        let by_mass = richardson(
+            (ph("3.9103", "1.000") - ph("3.8903", "1.000")) / 0.02,
+            (ph("3.9203", "1.000") - ph("3.8803", "1.000")) / 0.04,
+        );
+        assert!((by_mass / of("mass") - 1.0).abs() < 1e-6, "{by_mass}");
+        let by_volume = richardson(
+            (ph("3.9003", "1.001") - ph("3.9003", "0.999")) / 0.002,
+            (ph("3.9003", "1.002") - ph("3.9003", "0.998")) / 0.004,
+        );
+        assert!((by_volume / of("volume") - 1.0).abs() < 1e-6, "{by_volume}");
     }
 }
