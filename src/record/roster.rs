@@ -220,7 +220,7 @@ impl Roster {
 }
 
 impl Enrolment {
-    /// Both bounds belong to the dates, as in OpenSSH's `sshsig.c` (recalled).
+    /// Both bounds belong to the dates, as `ssh-keygen` 9.2 has it; `tests/interoperation` holds the two together.
     fn at(&self, time: DateTime<FixedOffset>) -> Standing {
         let time = time.to_utc();
         match (self.valid_after, self.valid_before) {

@@ -37,6 +37,11 @@ impl Placed<'_> {
         statement.page.as_str() == self.page && statement.label.as_str() == self.label
     }
 
+    /// Whether nothing has taken its place; a label may stand again on what does.
+    fn is_in_force(&self) -> bool {
+        !self.superseded && !self.has(Meaning::Withdrawn)
+    }
+
     fn has(&self, meaning: Meaning) -> bool {
         let mut acts = self.record.acts.iter().map(SignedAct::act);
         acts.any(|act| act.meaning == meaning)
@@ -90,7 +95,7 @@ pub(super) fn examine(results: &[Placed<'_>], findings: &mut Vec<Finding>) {
         if let Some(original) = original(placed, &index) {
             findings.push(placed.finding(Part::Whole, Fault::CopiedResult { original }));
         }
-        if !places.insert((placed.page, placed.label)) {
+        if placed.is_in_force() && !places.insert((placed.page, placed.label)) {
             findings.push(placed.finding(Part::Whole, Fault::DuplicateLabel));
         }
         successors(placed, &index, findings);
@@ -213,6 +218,22 @@ mod tests {
         );
         let twice = [placed("old", false, &old), placed("old", false, &old)];
         assert_eq!(found(&twice), ["duplicate-label"]);
+    }
+
+    #[test]
+    fn an_amendment_may_keep_the_label() {
+        let mut laboratory = Laboratory::new();
+        let old = laboratory.seal(&labelled("same"), "analyst", AT);
+        let mut statement = labelled("same");
+        statement.supersedes = Some(Supersession {
+            replaced: Named::new(labelled("same").label, old.digest),
+            reason: TextLine::new("wrong lot").unwrap(),
+        });
+        let new = record(&[&laboratory.seal(&statement, "analyst", AT)]);
+        let old = record(&[&old]);
+        let both = |mark| found(&[placed("same", mark, &old), placed("same", false, &new)]);
+        assert_eq!(both(true), [""; 0]);
+        assert_eq!(both(false), ["supersession-not-marked", "duplicate-label"]);
     }
 
     #[test]
