@@ -1,1 +1,28 @@
-//! Text of a fence to a problem and its source map.
+//! Text of a fence to a statement and its source map.
+//!
+//! [`read`] takes a block's text and gives the [`Statement`](crate::problem::Statement) that it makes, with the place of every input, or
+//! everything that is wrong with it at once. Places are those of the block's text; whoever took it out of a page turns them into the page's.
+//! This module computes nothing but unit conversions, and reads no file: what a block refers to comes in through [`Context`].
+
+mod adjustment;
+mod amount;
+mod conditions;
+mod constants;
+mod contents;
+mod context;
+mod defaults;
+mod keys;
+mod mixing;
+mod outline;
+mod preparation;
+mod reader;
+mod readings;
+mod remarks;
+mod source;
+mod titration;
+
+pub use context::{Attachments, Context, SolutionError, Solutions};
+pub use defaults::Defaults;
+pub use keys::{KEYS, KeyEntry};
+pub use outline::{Outline, outline};
+pub use reader::{Places, Reading, read};

@@ -31,8 +31,6 @@
 mod anatomy;
 mod comment;
 mod fence;
-#[cfg(test)]
-mod law;
 mod line_ending;
 mod markdown;
 mod pairing;

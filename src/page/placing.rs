@@ -302,6 +302,18 @@ mod tests {
     }
 
     #[test]
+    fn results_of_one_list_stand_below_each_other_in_the_order_in_which_they_came() {
+        let list = "- ```equilibrium\n  ```\n- ```equilibrium\n  ```\n\nend\n";
+        let mut page = read(list);
+        for label in ["a", "b", "c"] {
+            page = read(put(&page, &Written::draft(label, "x\n").unwrap()).unwrap());
+        }
+        let labels: Vec<_> = page.results().iter().map(Region::label).collect();
+        assert_eq!(labels, ["a", "b", "c"]);
+        assert_eq!(page.without_results(), list.as_bytes());
+    }
+
+    #[test]
     fn nothing_is_put_where_it_would_be_lost_or_doubled() {
         let written = Written::draft("a", "x\n").unwrap();
         let refused = |text: &str| put(&read(text), &written).unwrap_err();

@@ -40,7 +40,8 @@ pub enum WrittenError {
         /// The line, from 1.
         line: usize,
     },
-    /// Markdown would read the result otherwise: a fence or an HTML element of the answer is not closed.
+    /// Markdown would read the result otherwise: a fence or an HTML element of the answer is not closed. HTML ends
+    /// with an empty line only, so a draft that ends with HTML needs one.
     #[error("the answer leaves a fence or an element open")]
     Open,
 }

@@ -2,8 +2,8 @@
 
 use crate::problem::{Input, InputId};
 use crate::quantity::{
-    Amount, AmountConcentration, Density, Mass, MassConcentration, MassFraction, Molality, Number,
-    Volume,
+    Amount, AmountConcentration, Density, Dimension, Mass, MassConcentration, MassFraction,
+    Molality, Number, Volume,
 };
 use crate::substance::Form;
 use std::sync::Arc;
@@ -15,6 +15,81 @@ pub struct Composition {
     pub made_up: MadeUp,
     /// What went in, in the order in which it was stated.
     pub ingredients: Vec<Ingredient>,
+}
+
+impl Composition {
+    /// Pure water, of no stated volume.
+    pub fn water() -> Self {
+        Self {
+            made_up: MadeUp::Unstated,
+            ingredients: Vec::new(),
+        }
+    }
+
+    /// The same liquid as another block sees it: every input carries the block's name in front.
+    #[must_use]
+    pub fn seen_from(&self, reference: &str) -> Self {
+        let mut seen = self.clone();
+        if let MadeUp::To(volume) = &mut seen.made_up {
+            volume.id = volume.id.seen_from(reference);
+        }
+        for ingredient in &mut seen.ingredients {
+            match ingredient {
+                Ingredient::Substance(content) => content.rename(reference),
+                Ingredient::Solution(portion) => {
+                    portion.volume.id = portion.volume.id.seen_from(reference);
+                    if portion.reference.is_none() {
+                        portion.composition = Arc::new(portion.composition.seen_from(reference));
+                    }
+                }
+                Ingredient::Water(volume) => volume.id = volume.id.seen_from(reference),
+            }
+        }
+        seen
+    }
+}
+
+impl Content {
+    fn rename(&mut self, reference: &str) {
+        fn seen<D: Dimension>(input: &mut Input<D>, reference: &str) {
+            input.id = input.id.seen_from(reference);
+        }
+        self.id = self.id.seen_from(reference);
+        match &mut self.amount {
+            ContentAmount::Concentration(input) => seen(input, reference),
+            ContentAmount::Molality(input) => seen(input, reference),
+            ContentAmount::MassConcentration(input) => seen(input, reference),
+            ContentAmount::Mass(input) => seen(input, reference),
+            ContentAmount::Amount(input) => seen(input, reference),
+            ContentAmount::Stock { taken, strength } => {
+                match taken {
+                    Taken::Volume(input) => seen(input, reference),
+                    Taken::Mass(input) => seen(input, reference),
+                }
+                match strength {
+                    Strength::Concentration(input) => seen(input, reference),
+                    Strength::MassConcentration(input) => seen(input, reference),
+                    Strength::MassFraction { fraction, density } => {
+                        seen(fraction, reference);
+                        if let Some(density) = density {
+                            seen(density, reference);
+                        }
+                    }
+                }
+            }
+        }
+        let Corrections {
+            purity,
+            water,
+            factor,
+        } = &mut self.corrections;
+        for input in [purity, water].into_iter().flatten() {
+            seen(input, reference);
+        }
+        if let Some(input) = factor {
+            seen(input, reference);
+        }
+    }
 }
 
 /// How the final volume of a liquid is known.

@@ -2,6 +2,7 @@
 
 use crate::problem::Input;
 use crate::quantity::{Number, Pressure, Temperature};
+use crate::substance::Constant;
 use std::collections::BTreeSet;
 
 /// A value with where it was stated.
@@ -37,6 +38,8 @@ pub struct Conditions {
     pub uncertainty: Stated<UncertaintyMode>,
     /// What the analyst accepts in so many words.
     pub accepted: BTreeSet<Acceptance>,
+    /// The user's own pKw at zero ionic strength, in place of the formulation.
+    pub pkw: Option<Constant>,
 }
 
 /// The activity models a block may name.
@@ -114,4 +117,10 @@ pub enum UncertaintyMode {
 pub enum Acceptance {
     /// `model outside its range`.
     ModelOutsideItsRange,
+}
+
+impl Acceptance {
+    /// Every acceptance with the words that a block uses for it.
+    pub const NAMES: [(&'static str, Self); 1] =
+        [("model outside its range", Self::ModelOutsideItsRange)];
 }

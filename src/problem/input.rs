@@ -22,6 +22,22 @@ impl InputId {
         Self(format!("{} / {key}", self.0))
     }
 
+    /// The identity with its last part, a place in a list, followed by a name: `contents / 1 sodium chloride`.
+    #[must_use]
+    pub fn renamed(&self, name: &str) -> Self {
+        Self(format!("{} {name}", self.0))
+    }
+
+    /// This key beside another: the top-level key itself beside `contents`, and `sample / volume` beside `sample`.
+    #[must_use]
+    pub fn in_same_place(&self, other: &Self) -> Self {
+        if other.0 == "contents" {
+            self.clone()
+        } else {
+            other.within(&self.0)
+        }
+    }
+
     /// The identity as seen from another block that uses the solution `reference`.
     #[must_use]
     pub fn seen_from(&self, reference: &str) -> Self {

@@ -1,6 +1,6 @@
 //! A value with its uncertainty, as stated.
 
-use crate::quantity::{Decimal, Dimension, Unit};
+use crate::quantity::{Decimal, Dimension, Number, RoundingRule, Temperature, Unit};
 use std::fmt;
 use std::marker::PhantomData;
 
@@ -125,6 +125,72 @@ impl<D: Dimension> Measured<D> {
     /// Degrees of freedom of the uncertainty, a dimensionless number, where given.
     pub fn degrees_of_freedom(&self) -> Option<f64> {
         self.uncertainty?.degrees_of_freedom.map(Decimal::to_f64)
+    }
+}
+
+impl<D: Dimension> Measured<D> {
+    /// The mean of at least two readings in one unit, with the standard deviation of the mean and its degrees of freedom; else `None`.
+    ///
+    /// The mean keeps two decimals more than the readings. Source: JCGM 100:2008, 4.2; recalled.
+    pub fn mean(readings: &[Self]) -> Option<Self> {
+        let first = readings.first()?;
+        if readings.len() < 2 || readings.iter().any(|reading| reading.unit != first.unit) {
+            return None;
+        }
+        let degrees_of_freedom = u32::try_from(readings.len() - 1).ok()?;
+        let count = f64::from(degrees_of_freedom) + 1.0;
+        let values: Vec<f64> = readings
+            .iter()
+            .map(|reading| reading.decimal.to_f64())
+            .collect();
+        let mean = values.iter().sum::<f64>() / count;
+        let squares: f64 = values
+            .iter()
+            .map(|value| (value - mean) * (value - mean))
+            .sum();
+        let deviation = (squares / f64::from(degrees_of_freedom) / count).sqrt();
+        let places = readings
+            .iter()
+            .map(|reading| reading.decimal.decimal_places())
+            .max()?
+            + 2;
+        let places = u8::try_from(places).ok()?;
+        let rule = RoundingRule::HalfEven;
+        Some(Self {
+            decimal: rule.decimal_to_places(Decimal::shortest(mean), places),
+            unit: first.unit,
+            uncertainty: Some(Uncertainty {
+                stated: rule.to_figures(deviation, 3),
+                relative: false,
+                spread: Spread::Replicates,
+                degrees_of_freedom: Some(Decimal::whole(degrees_of_freedom)),
+            }),
+            dimension: PhantomData,
+        })
+    }
+}
+
+impl Measured<Temperature> {
+    /// A temperature in degrees Celsius, without uncertainty.
+    pub fn celsius(decimal: Decimal) -> Self {
+        Self {
+            decimal,
+            unit: Unit::Celsius,
+            uncertainty: None,
+            dimension: PhantomData,
+        }
+    }
+}
+
+impl Measured<Number> {
+    /// A number without unit or uncertainty.
+    pub fn number(decimal: Decimal) -> Self {
+        Self {
+            decimal,
+            unit: Unit::One,
+            uncertainty: None,
+            dimension: PhantomData,
+        }
     }
 }
 

@@ -27,7 +27,9 @@ pub(super) fn line_without_key(source: &str, base: usize) -> Diagnostic {
 
 /// Whether after this complaint of the scanner a quotation mark or bracket is open.
 pub(super) fn leaves_open(complaint: &str) -> bool {
-    complaint.contains("flow ") || complaint.contains("end of stream")
+    ["flow ", "end of stream", "expected node content"]
+        .iter()
+        .any(|part| complaint.contains(part))
 }
 
 /// The span of the first `:` that follows a word and is followed by neither blank nor line end, in the first line of
@@ -50,6 +52,7 @@ pub(super) fn colon_without_space(text: &str) -> Option<Span> {
 const KINDS: &[(&str, Said)] = &[
     ("recursion limit", |found| found.deep()),
     ("unknown anchor", |found| found.alias()),
+    ("unprintable", |found| found.control_character()),
     ("tab", |found| found.tab()),
     ("mapping values are not allowed", |found| {
         found.second_colon()
@@ -60,6 +63,7 @@ const KINDS: &[(&str, Said)] = &[
         found.open_quotation()
     }),
     ("flow ", |found| found.open_bracket()),
+    ("expected node content", |found| found.open_bracket()),
     ("misplaced bracket", |found| found.open_bracket()),
     ("trailing content", |found| found.after_quotation()),
     ("did not find expected key", |found| found.indentation()),
@@ -126,13 +130,26 @@ impl Found<'_> {
             )
             .expecting("`key: value`");
         }
-        let (_, line) = self.line_before();
+        let (start, line) = self.line_before();
         if line.contains(": ") {
             return self
                 .error("a second colon followed by a space stands in this line")
                 .helped(
                     "put the value in quotation marks, or the second key on a line of its own",
                 );
+        }
+        let above = self.line_around(
+            self.source
+                .get(..start)
+                .unwrap_or_default()
+                .trim_end()
+                .len(),
+        );
+        if above
+            .of(self.source)
+            .is_some_and(|text| !text.is_empty() && !text.contains(':'))
+        {
+            return self.without_key(above);
         }
         self.error("this key is indented as if it went on with the line above")
             .expecting("a key in the same column as the keys that it belongs to")
@@ -207,16 +224,56 @@ impl Found<'_> {
             .helped("put each `- item` on a line of its own")
     }
 
+    fn control_character(&self) -> Diagnostic {
+        let message = "an invisible control character stands here";
+        Diagnostic::error(Rule::HiddenCharacter, self.character(), message).helped("remove it")
+    }
+
     fn no_colon(&self) -> Diagnostic {
-        match self.colon_without_space() {
-            Some(colon) => Diagnostic::error(
+        if let Some(colon) = self.colon_without_space() {
+            return Diagnostic::error(
                 Rule::YamlSyntax,
                 colon,
                 "a space is missing after the colon",
-            ),
-            None => self.error("a line without a key and a colon stands here"),
+            )
+            .expecting("`key: value`");
         }
+        self.without_key(self.line_around(self.character().start()))
+    }
+
+    /// The diagnostic for a line that has no key.
+    fn without_key(&self, line: Span) -> Diagnostic {
+        let text = line.of(self.source).unwrap_or_default();
+        if text.starts_with('-') && !text.starts_with("- ") {
+            let hyphen = Span::new(line.start(), line.start() + 1);
+            return Diagnostic::error(
+                Rule::YamlSyntax,
+                hyphen,
+                "a space is missing after the hyphen",
+            )
+            .expecting("`- ` and an item");
+        }
+        Diagnostic::error(
+            Rule::YamlSyntax,
+            line,
+            "a line without a key and a colon stands here",
+        )
         .expecting("`key: value`")
+    }
+
+    /// The line that holds `offset` without the blanks around it.
+    fn line_around(&self, offset: usize) -> Span {
+        let before = self.source.get(..offset).unwrap_or_default();
+        let start = before.rfind('\n').map_or(0, |newline| newline + 1);
+        let line = self
+            .source
+            .get(start..)
+            .unwrap_or_default()
+            .lines()
+            .next()
+            .unwrap_or_default();
+        let start = start + line.len() - line.trim_start().len();
+        Span::new(start, start + line.trim().len())
     }
 
     fn escape(&self) -> Diagnostic {
@@ -237,58 +294,47 @@ mod tests {
         found.remove(0)
     }
 
+    fn holds(text: &str, message: &str, place: &str) {
+        let found = only(text);
+        assert!(found.message().contains(message), "{text:?} {found:?}");
+        assert_eq!(found.span().of(text), Some(place), "{text:?} {found:?}");
+    }
+
     #[test]
-    fn each_mistake_is_named_at_its_place() {
-        for (text, message, place) in [
-            (
-                "µ: 1\nnote: a: b",
-                "a second colon followed by a space stands in this line",
-                ":",
-            ),
-            (
-                "a:\n  b:1\n  c: 2",
-                "a space is missing after the colon",
-                ":",
-            ),
-            (
-                "µ: 1\nlabel:abc\ntask: x",
-                "a space is missing after the colon",
-                ":",
-            ),
-            (
-                "µ: 1\na:\n\tb: 1",
-                "a tab stands where only spaces may",
-                "\t",
-            ),
-            ("µ: @x", "a value cannot begin with `@`", "@"),
-            ("µ: `x`", "a value cannot begin with a backtick", "`"),
-            (
-                "µ: [1, 2",
-                "a bracket is not closed, or a comma is missing in it",
-                "2",
-            ),
-            ("µ: 'x", "a quotation mark is opened and not closed", "'"),
-            (
-                "µ: \"x\" y",
-                "something follows the closing quotation mark",
-                "y",
-            ),
-            (
-                "µ:\n  b: 1\n c: 2",
-                "the indentation of this line fits none of the lines above",
-                "c",
-            ),
-            (
-                "µ: 1\n  b: 2",
-                "this key is indented as if it went on with the line above",
-                ":",
-            ),
-            ("µ: - x", "a list item begins in the middle of a line", "-"),
-        ] {
-            let found = only(text);
-            assert_eq!(found.message(), message, "{text:?}");
-            assert_eq!(found.span().of(text), Some(place), "{text:?} {found:?}");
-        }
+    fn a_mistake_about_keys_is_named_at_its_place() {
+        holds("µ: 1\nnote: a: b", "a second colon", ":");
+        holds("a:\n  b:1\n  c: 2", "space is missing after the colon", ":");
+        holds(
+            "µ: 1\nlabel:abc\ntask: x",
+            "space is missing after the colon",
+            ":",
+        );
+        holds("µ:\n  b: 1\n c: 2", "fits none of the lines above", "c");
+        holds("µ: 1\n  b: 2", "as if it went on with the line above", ":");
+        holds(
+            "µ:\n  acid 1 mol/L\n  b: 2",
+            "without a key",
+            "acid 1 mol/L",
+        );
+        holds("µ: 1\nacid 1 mol/L\nb: 2", "without a key", "acid 1 mol/L");
+    }
+
+    #[test]
+    fn a_mistake_about_values_is_named_at_its_place() {
+        holds("µ: 1\na:\n\tb: 1", "a tab stands", "\t");
+        holds("µ: @x", "cannot begin with `@`", "@");
+        holds("µ: `x`", "cannot begin with a backtick", "`");
+        holds("µ: [1, 2", "a bracket is not closed", "2");
+        holds("µ: 'x", "a quotation mark is opened and not closed", "'");
+        holds("µ: \"x\" y", "follows the closing quotation mark", "y");
+        holds("µ: \"\\q\"", "the backslash begins no character", "\"");
+        holds(
+            "µ:\n- b\n-c\nd: 1",
+            "space is missing after the hyphen",
+            "-",
+        );
+        holds("µ: 1\0", "invisible control character", "\0");
+        holds("µ: - x", "a list item begins in the middle of a line", "-");
     }
 
     #[test]

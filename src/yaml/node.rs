@@ -79,6 +79,16 @@ impl Node {
     pub fn as_mapping(&self, diagnostics: &mut Vec<Diagnostic>) -> Option<&Mapping> {
         match &self.value {
             Value::Mapping(mapping) => Some(mapping),
+            Value::Text(scalar) if !scalar.text.trim().is_empty() => {
+                let message = "found text instead of a mapping";
+                let help = match colon_without_space(&scalar.text) {
+                    Some(_) => "put a space after the colon",
+                    None => "write `key: value`",
+                };
+                let found = Diagnostic::error(Rule::NotAMapping, self.span, message);
+                diagnostics.push(found.expecting("a mapping").helped(help));
+                None
+            }
             _ => self.refuse("a mapping", diagnostics),
         }
     }
@@ -108,17 +118,6 @@ impl Node {
             }
             Value::Text(scalar) if scalar.text.trim().is_empty() => {
                 Diagnostic::error(Rule::MissingValue, self.span, "the value is blank")
-            }
-            Value::Text(scalar) if expected == "a mapping" => {
-                let found = Diagnostic::error(
-                    Rule::NotAMapping,
-                    self.span,
-                    "found text instead of a mapping",
-                );
-                match colon_without_space(&scalar.text) {
-                    Some(_) => found.helped("a space is missing after the colon"),
-                    None => found.helped("write `key: value`"),
-                }
             }
             Value::Text(_) => self.wrong_kind("text", expected),
             Value::List(_) => self.wrong_kind("a list", expected),
@@ -215,6 +214,20 @@ mod tests {
         assert_eq!(found[0].rule(), Rule::WrongKind);
         assert_eq!(found[0].span().of(text), Some("[1, 2]"));
         assert_eq!(found[0].expected(), Some("text"));
+    }
+
+    #[test]
+    fn text_where_a_mapping_is_expected_is_told_what_it_lacks() {
+        let help = |text| {
+            let mut found = Vec::new();
+            assert!(value(text).as_mapping(&mut found).is_none());
+            (found[0].rule(), found[0].help().map(str::to_owned))
+        };
+        assert_eq!(
+            help("a: pH:7").1.as_deref(),
+            Some("put a space after the colon")
+        );
+        assert_eq!(help("a: pH 7").0, Rule::NotAMapping);
     }
 
     #[test]

@@ -1,8 +1,7 @@
 //! The law of the page: what was put in and taken out again leaves every byte as it was.
 
+use ionfolio::page::{Mark, Page, Region, Written};
 use proptest::prelude::*;
-
-use crate::page::{Mark, Page, Region, Written};
 
 /// Stretches of Markdown that pages are put together from, each a whole number of lines.
 const STRETCHES: &[&str] = &[
@@ -99,6 +98,8 @@ fn text(region: &Region) -> (String, String) {
     (region.label().to_owned(), region.answer().text().to_owned())
 }
 
+const LETTERS: &[u8] = b"`~>-* \t\r\n\r\nequilibrium<!-- ionfolio result a -->\0";
+
 proptest! {
     #![proptest_config(ProptestConfig { failure_persistence: None, ..ProptestConfig::default() })]
 
@@ -157,7 +158,7 @@ proptest! {
 
     #[test]
     fn no_bytes_break_the_reader_and_every_place_lies_in_the_page(
-        bytes in prop::collection::vec(prop::sample::select(&b"`~>-* \t\r\n\r\nequilibrium<!-- ionfolio result a -->\0"[..]), 0..80),
+        bytes in prop::collection::vec(prop::sample::select(LETTERS), 0..80),
         parts in prop::collection::vec(prop::sample::select(&[
             "<!-- ionfolio result a -->\n", "<!-- ionfolio end a -->\n", "<!-- ionfolio result b superseded -->\r\n",
             "```record\n", "```\n", "```act\n", "\n", "```equilibrium\n", "> ", "- ", "\r", "x\n", "<!--\n", "-->\n",

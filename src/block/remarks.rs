@@ -1,0 +1,258 @@
+//! Solvent, reporting, annotations, hand value, reading.
+
+use crate::block::reader::Reader;
+use crate::block::{Defaults, amount};
+use crate::problem::{
+    AcceptanceLimit, Annotations, HandValue, InputId, MeasuredReading, Reporting, ShortcutName,
+};
+use crate::quantity::{Decimal, Dimension, Number, Temperature};
+use crate::text::{Diagnostic, Rule};
+use crate::yaml::{Keys, Scalar};
+
+/// Anything but water is refused, with the reason and a way.
+pub(super) fn solvent(reader: &mut Reader<'_>, keys: &mut Keys<'_>) {
+    let Some(scalar) = keys.text("solvent", &mut reader.diagnostics) else {
+        return;
+    };
+    if scalar.text() != "water" {
+        reader.diagnostics.push(
+            Diagnostic::error(
+                Rule::Solvent,
+                scalar.span(),
+                format!("pH and pK mean something else in {}; no figure would be right", scalar.text()),
+            )
+            .expecting("`water`")
+            .helped("compute the aqueous part before mixing, and report its pH as that of the aqueous part"),
+        );
+    }
+}
+
+/// `report: {pH: 2 decimals, amounts: 4 figures}`.
+pub(super) fn reporting(
+    reader: &mut Reader<'_>,
+    keys: &mut Keys<'_>,
+    defaults: &Defaults,
+) -> Reporting {
+    let (ph_decimals, significant_figures) = defaults.digits();
+    let mut reporting = Reporting {
+        ph_decimals,
+        significant_figures,
+        rounding: defaults.rounding(),
+    };
+    let Some(mapping) = keys.mapping("report", &mut reader.diagnostics) else {
+        return reporting;
+    };
+    let mut inner = mapping.keys();
+    for (key, words, place) in [
+        ("pH", ["decimals", "decimal"], &mut reporting.ph_decimals),
+        (
+            "amounts",
+            ["figures", "figure"],
+            &mut reporting.significant_figures,
+        ),
+    ] {
+        let Some(scalar) = inner.text(key, &mut reader.diagnostics) else {
+            continue;
+        };
+        let digits = words
+            .iter()
+            .fold(scalar.text(), |text, word| {
+                text.strip_suffix(word).unwrap_or(text)
+            })
+            .trim();
+        match digits.parse::<u8>() {
+            Ok(count) if (1..=8).contains(&count) => *place = count,
+            _ => reader.diagnostics.push(
+                Diagnostic::error(
+                    Rule::BadReport,
+                    scalar.span(),
+                    format!("`{}` is no number of digits", scalar.text()),
+                )
+                .expecting(format!(
+                    "a whole number from 1 to 8, such as `2 {}`",
+                    words[0]
+                )),
+            ),
+        }
+    }
+    inner.finish(&mut reader.diagnostics);
+    reporting
+}
+
+/// Method, equipment and notes, as written.
+pub(super) fn annotations(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Annotations {
+    let method = keys
+        .text("method", &mut reader.diagnostics)
+        .map(|scalar| scalar.text().to_owned());
+    let notes = keys
+        .text("notes", &mut reader.diagnostics)
+        .map(|scalar| scalar.text().to_owned());
+    let equipment = keys.take("equipment").map_or_else(Vec::new, |node| {
+        node.items()
+            .iter()
+            .filter_map(|item| {
+                item.as_text(&mut reader.diagnostics)
+                    .map(|scalar| scalar.text().to_owned())
+            })
+            .collect()
+    });
+    Annotations {
+        method,
+        equipment,
+        notes,
+    }
+}
+
+/// A pH worked by hand.
+pub(super) fn hand_value(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<HandValue> {
+    let mapping = keys.mapping("hand value", &mut reader.diagnostics)?;
+    let mut inner = mapping.keys();
+    let id = InputId::new("hand value");
+    let ph = reader.required::<Number>(&mut inner, "pH", &id);
+    let by = inner
+        .required_text("by", &mut reader.diagnostics)
+        .and_then(|scalar| shortcut(reader, scalar));
+    let limit = reader.amount::<Number>(&mut inner, "limit", &id);
+    inner.finish(&mut reader.diagnostics);
+    Some(HandValue {
+        ph: ph?,
+        by: by?,
+        limit,
+    })
+}
+
+fn shortcut(reader: &mut Reader<'_>, scalar: &Scalar) -> Option<ShortcutName> {
+    let wanted = scalar.text().to_lowercase();
+    let found = ShortcutName::NAMES
+        .iter()
+        .find(|(words, _)| *words == wanted);
+    if found.is_none() {
+        let names = ShortcutName::NAMES.map(|(words, _)| words);
+        reader.diagnostics.push(
+            Diagnostic::error(
+                Rule::BadHandValue,
+                scalar.span(),
+                format!("`{}` is no shortcut that is known", scalar.text()),
+            )
+            .expecting(format!("one of {}", names.join(", ")))
+            .did_you_mean(&wanted, names),
+        );
+    }
+    found.map(|(_, shortcut)| *shortcut)
+}
+
+/// A reading of a pH meter.
+pub(super) fn measured(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<MeasuredReading> {
+    let mapping = keys.mapping("measured", &mut reader.diagnostics)?;
+    let mut inner = mapping.keys();
+    let id = InputId::new("measured");
+    let ph = reader.required::<Number>(&mut inner, "pH", &id);
+    let temperature = reader.amount::<Temperature>(&mut inner, "temperature", &id);
+    let calibration = inner.take("calibration").map_or_else(Vec::new, |node| {
+        node.items()
+            .iter()
+            .filter_map(|item| {
+                item.as_text(&mut reader.diagnostics)
+                    .map(|scalar| scalar.text().to_owned())
+            })
+            .collect()
+    });
+    let limit = inner
+        .text("limit", &mut reader.diagnostics)
+        .and_then(|scalar| limit(reader, scalar));
+    inner.finish(&mut reader.diagnostics);
+    Some(MeasuredReading {
+        ph: ph?,
+        temperature,
+        calibration,
+        limit,
+    })
+}
+
+/// `7.20 ± 0.05`, or `7.15 to 7.25`: an acceptance limit has no distribution, so no words follow.
+fn limit(reader: &mut Reader<'_>, scalar: &Scalar) -> Option<AcceptanceLimit> {
+    let text = scalar.text();
+    let pair = |a: &str, b: &str| Some((Decimal::parse(a).ok()?, Decimal::parse(b).ok()?));
+    let spread = ["±", "+/-"]
+        .iter()
+        .find_map(|sign| text.split_once(sign))
+        .and_then(|(a, b)| pair(a, b));
+    let range = ["to", "..", "–"]
+        .iter()
+        .find_map(|word| text.split_once(word))
+        .and_then(|(a, b)| pair(a, b));
+    let (nominal, half_width) = match (spread, range) {
+        (Some((nominal, half)), _) => (nominal.to_f64(), half.to_f64()),
+        (None, Some((low, high))) => {
+            let (low, high) = (low.to_f64(), high.to_f64());
+            (0.5 * (low + high), 0.5 * (high - low))
+        }
+        (None, None) => {
+            reader.diagnostics.push(
+                Diagnostic::error(
+                    Rule::BadMeasured,
+                    scalar.span(),
+                    format!("`{text}` is no acceptance limit"),
+                )
+                .expecting("`7.20 ± 0.05` or `7.15 to 7.25`"),
+            );
+            return None;
+        }
+    };
+    if half_width < 0.0 {
+        reader.error(
+            Rule::BadMeasured,
+            scalar.span(),
+            "the limits are the wrong way round",
+        );
+        return None;
+    }
+    Some(AcceptanceLimit {
+        nominal: Number::from_base(nominal),
+        half_width: Number::from_base(half_width),
+        written: text.to_owned(),
+    })
+}
+
+/// A list of names as written.
+pub(super) fn names(
+    reader: &mut Reader<'_>,
+    keys: &mut Keys<'_>,
+    key: &'static str,
+) -> Vec<String> {
+    keys.take(key).map_or_else(Vec::new, |node| {
+        node.items()
+            .iter()
+            .filter_map(|item| {
+                item.as_text(&mut reader.diagnostics)
+                    .map(|scalar| scalar.text().to_owned())
+            })
+            .collect()
+    })
+}
+
+/// A whole number within limits, if the key is there.
+pub(super) fn count(
+    reader: &mut Reader<'_>,
+    keys: &mut Keys<'_>,
+    key: &'static str,
+    from: u32,
+    to: u32,
+) -> Option<u32> {
+    let scalar = keys.text(key, &mut reader.diagnostics)?;
+    let number = amount::number(scalar, &mut reader.diagnostics)?;
+    match number.to_string().parse::<u32>() {
+        Ok(count) if (from..=to).contains(&count) => Some(count),
+        _ => {
+            reader.diagnostics.push(
+                Diagnostic::error(
+                    Rule::OutOfRange,
+                    scalar.span(),
+                    format!("`{}` is out of range", scalar.text()),
+                )
+                .expecting(format!("a whole number from {from} to {to}")),
+            );
+            None
+        }
+    }
+}
