@@ -36,9 +36,9 @@ struct StepView {
 }
 
 impl ConstantsView {
-    pub(super) fn of(used: &ConstantsUsed) -> Self {
-        let mut steps: Vec<StepView> = used
-            .water
+    /// The constants used, with the user's own pKw where one was stated.
+    pub(super) fn of(water: Option<&Constant>, used: &ConstantsUsed) -> Self {
+        let mut steps: Vec<StepView> = water
             .iter()
             .map(|water| StepView::of("water", 0, water, None))
             .collect();
@@ -56,7 +56,7 @@ impl ConstantsView {
         Self {
             steps,
             written: substance::written(
-                used.water.as_ref(),
+                water,
                 &used.ligands,
                 &used.ions,
                 &used.forms,

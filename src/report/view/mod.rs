@@ -127,7 +127,7 @@ impl View {
                 .map(judgement::ComparisonView::of),
             assumptions: judgement::assumptions(&answer.assumptions),
             cautions: judgement::cautions(&answer.cautions),
-            constants: constants::ConstantsView::of(&answer.constants),
+            constants: constants::ConstantsView::of(statement.conditions.pkw.as_ref(), &answer.constants),
             working: Working::of(reporting, answer),
             plots: plots.iter().map(PlotView::of).collect(),
             annotations: AnnotationsView::of(statement),
