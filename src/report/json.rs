@@ -32,7 +32,10 @@ pub fn json(page: &str, statement: &Statement, answer: &Answer) -> Value {
     );
     put("hand_value", hand_value(answer));
     put("measured", comparison(answer));
-    put("constants", constants(statement.conditions.pkw.as_ref(), &answer.constants));
+    put(
+        "constants",
+        constants(statement.conditions.pkw.as_ref(), &answer.constants),
+    );
     put("assumptions", assumptions(answer));
     put(
         "cautions",

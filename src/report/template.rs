@@ -57,14 +57,15 @@ const BUILT_IN: [(&str, &str); 5] = [
 ];
 
 /// Parts that every template may include.
-const PARTS: [(&str, &str); 4] = [
+const PARTS: [(&str, &str); 5] = [
+    ("cautions.md", include_str!("templates/cautions.md")),
     ("found.md", include_str!("templates/found.md")),
     ("method.md", include_str!("templates/method.md")),
     ("judgement.md", include_str!("templates/judgement.md")),
     ("working.md", include_str!("templates/working.md")),
 ];
 
-/// Steps that the engine may take; the largest built-in answer, a titration of 1,000 points, takes under a twentieth.
+/// Steps that the engine may take, and with them the memory: the engine charges for what it writes.
 const FUEL: u64 = 4_000_000;
 
 impl Template {

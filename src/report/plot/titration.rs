@@ -65,12 +65,12 @@ pub(super) fn curve(
         marks,
         panels: vec![
             Panel {
-                curves: line(points, 0),
+                curves: line(points),
                 dots,
                 ..panel(250.0, "pH", upright, 7)
             },
             Panel {
-                curves: line(slopes, 1),
+                curves: line(slopes),
                 ..panel(120.0, "slope in pH/mL", slope, 4)
             },
         ],
@@ -85,7 +85,7 @@ pub(super) fn residuals(label: &str, fit: &Fit, readings: &Readings) -> Option<D
         .map(|point| point.volume_ml)
         .zip(fit.residuals.iter().copied())
         .collect();
-    let across = Range::of(dots.iter().map(|(volume, _)| *volume))?.to_ticks(10);
+    let across = Range::of(dots.iter().map(|(volume, _)| *volume).chain([0.0]))?.to_ticks(10);
     let three = 3.0 * fit.residual_standard_deviation;
     let upright = Range::of(
         dots.iter()
@@ -133,10 +133,10 @@ fn panel(height: f64, label: &str, range: Range, ticks: u32) -> Panel {
 }
 
 /// A curve without a name: it is alone in its panel.
-fn line(points: Vec<(f64, f64)>, style: usize) -> Vec<Curve> {
+fn line(points: Vec<(f64, f64)>) -> Vec<Curve> {
     vec![Curve {
         points,
-        style,
+        style: 0,
         name: None,
     }]
 }

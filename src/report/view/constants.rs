@@ -55,12 +55,7 @@ impl ConstantsView {
         }
         Self {
             steps,
-            written: substance::written(
-                water,
-                &used.ligands,
-                &used.ions,
-                &used.forms,
-            ),
+            written: substance::written(water, &used.ligands, &used.ions, &used.forms),
         }
     }
 }
