@@ -171,6 +171,13 @@ impl System {
             .map(SpeciesIndex)
     }
 
+    /// The polynuclear species, in the order in which they were given.
+    pub fn polynuclear_species(&self) -> impl Iterator<Item = SpeciesIndex> {
+        self.polynuclear
+            .iter()
+            .map(|species| SpeciesIndex(species.row))
+    }
+
     /// Number of species, H+ and OH- not counted.
     pub fn species_count(&self) -> usize {
         self.rows.len()

@@ -394,6 +394,8 @@ pub struct BudgetLine {
     pub sensitivity: f64,
     /// Share of the combined variance, 0 to 1.
     pub share: f64,
+    /// Degrees of freedom, where given.
+    pub degrees_of_freedom: Option<f64>,
     /// Where the uncertainty comes from: stated, tolerance, replicates, constant's source, model.
     pub origin: String,
 }
@@ -484,6 +486,8 @@ pub struct ConstantsUsed {
     pub forms: Vec<Arc<Form>>,
     /// The pK of each step at the temperature of the block: ligand, step from 1, pK.
     pub pk_at_temperature: Vec<(String, usize, f64)>,
+    /// Further constants that entered, each a sentence part with its source: CO₂ solubility, polyborates.
+    pub further: Vec<String>,
 }
 
 /// A stated assumption and what it costs.

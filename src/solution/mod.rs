@@ -1,6 +1,46 @@
 //! Problem to answer, with budget, shortcuts and assumptions.
 //!
-//! Turns what was stated into totals of components, has them solved, and works out what the task asks for. Knows no
-//! Markdown, no text positions, no files; its only randomness is a named generator with a stated seed.
+//! [`solve`] turns what was stated into totals of components, has them solved, and works out what the task asks for. Every pH in an answer
+//! comes from a certified equilibrium. Knows no Markdown, no text positions, no files; its only randomness is a named generator with a stated
+//! seed.
 
 pub mod answer;
+mod assembly;
+mod assumption;
+mod budget;
+mod carbon_dioxide;
+mod caution;
+mod composition;
+mod conclusion;
+mod dissociation;
+mod mixing;
+mod model_choice;
+mod polyborate;
+mod recipe;
+mod speciation;
+#[cfg(test)]
+mod specimen;
+mod tape;
+mod unsolvable;
+
+pub use budget::Contribution;
+pub use caution::{CAUTIONS, CautionEntry};
+pub use unsolvable::Unsolvable;
+
+use crate::problem::{Problem, Statement};
+use crate::solution::answer::Answer;
+
+/// The answer to a statement, in the units that the fields of [`Answer`] name; nothing in it is rounded.
+///
+/// # Errors
+/// [`Unsolvable`] where something is missing or out of range, where a target cannot be reached, and where no certified solution was found.
+pub fn solve(statement: &Statement) -> Result<Answer, Unsolvable> {
+    let bench = conclusion::Bench::of(statement)?;
+    match &statement.problem {
+        Problem::Speciation(task) => mixing::solution(&bench, &task.composition),
+        Problem::Mixing(task) => mixing::mixture(&bench, task),
+        _ => Err(Unsolvable::Fit {
+            reason: String::new(),
+        }),
+    }
+}
