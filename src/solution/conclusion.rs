@@ -7,7 +7,7 @@ use crate::solution::assembly::{Assembly, CARBONIC_ACID, Setting, Solved};
 use crate::solution::model_choice::{ChosenModel, choose, within_range};
 use crate::solution::recipe::{Recipe, Writer};
 use crate::solution::speciation::state;
-use crate::solution::{assumption, budget, carbon_dioxide, caution, polyborate};
+use crate::solution::{assumption, budget, carbon_dioxide, caution, distribution, polyborate};
 use crate::substance::Component;
 use std::sync::Arc;
 
@@ -81,6 +81,7 @@ impl<'a> Bench<'a> {
         };
         Ok(Answer {
             model: self.model_facts(&assembly),
+            distribution: distribution::over_ph(&assembly, &solved, &state),
             budget,
             simulation: None,
             shortcuts: Vec::new(),

@@ -13,6 +13,7 @@ mod caution;
 mod composition;
 mod conclusion;
 mod dissociation;
+mod distribution;
 mod mixing;
 mod model_choice;
 mod polyborate;
