@@ -270,7 +270,12 @@ mod tests {
 
     #[test]
     fn whole_numbers_keep_their_zeros() {
-        for (value, expected) in [(500.0, "500"), (4.0, "4"), (0.1 + 0.2, "0.3"), (-20.0, "−20")] {
+        for (value, expected) in [
+            (500.0, "500"),
+            (4.0, "4"),
+            (0.1 + 0.2, "0.3"),
+            (-20.0, "−20"),
+        ] {
             assert_eq!(short(value), expected);
         }
         assert_eq!(unrounded(1e7), "1 × 10⁷");

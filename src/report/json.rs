@@ -135,6 +135,7 @@ fn budget_lines(budget: &Budget) -> Value {
                 "unit": line.unit,
                 "sensitivity": line.sensitivity,
                 "share": line.share,
+                "degrees_of_freedom": line.degrees_of_freedom,
                 "origin": line.origin,
             })
         })

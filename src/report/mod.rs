@@ -15,6 +15,8 @@ mod rendering;
 #[cfg(test)]
 mod sample;
 mod template;
+#[cfg(test)]
+mod verification;
 mod view;
 mod working;
 

@@ -91,33 +91,3 @@ pub fn render(
         headline: headline::record_line(statement, answer),
     })
 }
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::report::sample;
-
-    #[test]
-    fn scratch() {
-        for (statement, answer) in [
-            sample::speciation(),
-            sample::preparation(),
-            sample::adjustment(),
-            sample::mixing(),
-            sample::titration(),
-        ] {
-            let template = Template::built_in(statement.problem.task()).unwrap();
-            let rendered = render("page.md", &statement, &answer, &template).unwrap();
-            let dir = std::path::Path::new("/tmp/h/report-out");
-            std::fs::create_dir_all(dir).unwrap();
-            std::fs::write(
-                dir.join(format!("{}.md", statement.problem.task())),
-                format!("{}\n\n{}", rendered.headline, rendered.markdown),
-            )
-            .unwrap();
-            for a in &rendered.attachments {
-                std::fs::write(dir.join(&a.file_name), &a.bytes).unwrap();
-            }
-        }
-    }
-}

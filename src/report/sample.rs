@@ -264,6 +264,7 @@ fn budget() -> Budget {
             unit: "mmol/L".to_owned(),
             sensitivity: -0.0213,
             share: 0.031,
+            degrees_of_freedom: None,
             origin: "stated".to_owned(),
         }],
         standard: 0.0121,

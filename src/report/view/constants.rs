@@ -10,6 +10,8 @@ use serde::Serialize;
 pub(in crate::report) struct ConstantsView {
     /// One for each dissociation step.
     steps: Vec<StepView>,
+    /// Further constants that entered, each with its source.
+    further: Vec<String>,
     /// The content of the fenced `constants` block that ends the answer, ending in a line feed; print it with `safe`.
     pub(in crate::report) written: String,
 }
@@ -55,6 +57,7 @@ impl ConstantsView {
         }
         Self {
             steps,
+            further: used.further.clone(),
             written: substance::written(water, &used.ligands, &used.ions, &used.forms),
         }
     }
