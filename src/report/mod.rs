@@ -14,6 +14,8 @@ mod plot;
 mod rendering;
 #[cfg(test)]
 mod sample;
+#[cfg(test)]
+mod solved;
 mod template;
 #[cfg(test)]
 mod verification;

@@ -28,18 +28,7 @@ pub(super) fn curve(
     let dots = measured(readings);
     let upright = Range::of(points.iter().chain(&dots).map(|(_, ph)| *ph))?.to_ticks(7);
     let slope = Range::of(slopes.iter().map(|(_, slope)| *slope).chain([0.0]))?.to_ticks(4);
-    let marks: Vec<Mark> = titrated
-        .equivalence_points
-        .iter()
-        .map(|point| Mark {
-            at: point.volume_ml,
-            name: format!(
-                "{} mL, pH {}",
-                hundredths(point.volume_ml),
-                hundredths(point.ph)
-            ),
-        })
-        .collect();
+    let marks = equivalence_marks(titrated);
     let equivalence = marks
         .iter()
         .map(|mark| mark.name.as_str())
@@ -75,6 +64,21 @@ pub(super) fn curve(
             },
         ],
     })
+}
+
+fn equivalence_marks(titrated: &TitrationOutcome) -> Vec<Mark> {
+    titrated
+        .equivalence_points
+        .iter()
+        .map(|point| Mark {
+            at: point.volume_ml,
+            name: format!(
+                "{} mL, pH {}",
+                hundredths(point.volume_ml),
+                hundredths(point.ph)
+            ),
+        })
+        .collect()
 }
 
 /// The residuals of a fit over volume, with three standard deviations, or `None` where there are none.
