@@ -105,7 +105,16 @@ impl Figures {
 /// Every digit of a number, as the shortest decimal that reads back as the same number.
 pub(super) fn unrounded(value: f64) -> String {
     if value.is_finite() {
-        pretty(Decimal::shortest(value))
+        let shortest = Decimal::shortest(value);
+        // 500 is shortest as 5e2; a number with every digit may show its zeros.
+        let zeros = u32::try_from(shortest.exponent()).unwrap_or(0);
+        let whole = 10_u128
+            .checked_pow(zeros)
+            .and_then(|power| shortest.digits().checked_mul(power))
+            .filter(|digits| zeros > 0 && *digits < 1_000_000);
+        pretty(whole.map_or(shortest, |digits| {
+            Decimal::new(shortest.is_negative(), digits, 0)
+        }))
     } else {
         value.to_string()
     }
@@ -257,6 +266,19 @@ mod tests {
         ] {
             assert_eq!(figures().percent(share), expected);
         }
+    }
+
+    #[test]
+    fn whole_numbers_keep_their_zeros() {
+        for (value, expected) in [
+            (500.0, "500"),
+            (4.0, "4"),
+            (0.1 + 0.2, "0.3"),
+            (-20.0, "−20"),
+        ] {
+            assert_eq!(short(value), expected);
+        }
+        assert_eq!(unrounded(1e7), "1 × 10⁷");
     }
 
     #[test]

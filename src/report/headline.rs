@@ -2,7 +2,7 @@
 
 use crate::problem::{AdjustmentGoal, Problem, Statement};
 use crate::report::escape;
-use crate::report::figures::Figures;
+use crate::report::figures::{self, Figures};
 use crate::solution::answer::{
     Addition, AdjustmentOutcome, Answer, Budget, Outcome, PreparationOutcome, TitrationOutcome,
 };
@@ -60,7 +60,7 @@ fn prepared(figures: Figures, made: &PreparationOutcome, temperature_c: f64) -> 
     } else {
         format!(
             "pH {ph} at {} °C as made",
-            figures.figures(made.temperature_of_use_c, 4)
+            figures::short(made.temperature_of_use_c)
         )
     }
 }

@@ -32,7 +32,10 @@ pub fn json(page: &str, statement: &Statement, answer: &Answer) -> Value {
     );
     put("hand_value", hand_value(answer));
     put("measured", comparison(answer));
-    put("constants", constants(&answer.constants));
+    put(
+        "constants",
+        constants(statement.conditions.pkw.as_ref(), &answer.constants),
+    );
     put("assumptions", assumptions(answer));
     put(
         "cautions",
@@ -132,6 +135,7 @@ fn budget_lines(budget: &Budget) -> Value {
                 "unit": line.unit,
                 "sensitivity": line.sensitivity,
                 "share": line.share,
+                "degrees_of_freedom": line.degrees_of_freedom,
                 "origin": line.origin,
             })
         })
@@ -180,9 +184,8 @@ fn comparison(answer: &Answer) -> Value {
     })
 }
 
-fn constants(used: &ConstantsUsed) -> Value {
-    let water = used
-        .water
+fn constants(water: Option<&Constant>, used: &ConstantsUsed) -> Value {
+    let water = water
         .iter()
         .map(|constant| one_constant("water", 0, constant, None));
     let steps = used.ligands.iter().flat_map(|ligand| {

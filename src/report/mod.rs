@@ -14,7 +14,11 @@ mod plot;
 mod rendering;
 #[cfg(test)]
 mod sample;
+#[cfg(test)]
+mod solved;
 mod template;
+#[cfg(test)]
+mod verification;
 mod view;
 mod working;
 

@@ -57,14 +57,15 @@ const BUILT_IN: [(&str, &str); 5] = [
 ];
 
 /// Parts that every template may include.
-const PARTS: [(&str, &str); 4] = [
+const PARTS: [(&str, &str); 5] = [
+    ("cautions.md", include_str!("templates/cautions.md")),
     ("found.md", include_str!("templates/found.md")),
     ("method.md", include_str!("templates/method.md")),
     ("judgement.md", include_str!("templates/judgement.md")),
     ("working.md", include_str!("templates/working.md")),
 ];
 
-/// Steps that the engine may take; the largest built-in answer, a titration of 1,000 points, takes under a twentieth.
+/// Steps that the engine may take, and with them the memory: the engine charges for what it writes.
 const FUEL: u64 = 4_000_000;
 
 impl Template {
@@ -238,4 +239,57 @@ fn add_filters(environment: &mut Environment<'static>, figures: Figures) {
 
 fn safe(text: String) -> Value {
     Value::from_safe_string(text)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::report::{Rendered, ReportError, render, sample};
+
+    fn with(source: &str) -> Result<Rendered, ReportError> {
+        let (statement, answer) = sample::speciation();
+        let template = Template::replaced("own.md", source).map_err(ReportError::from)?;
+        render("a.md", &statement, &answer, &template)
+    }
+
+    const ENDING: &str = "\n```constants\n{{ constants.written | safe }}```\n";
+
+    #[test]
+    fn a_laboratory_may_replace_a_template() {
+        let own = with(&format!(
+            "pH is {{{{ state.ph | places(3) }}}} by view {{{{ view }}}}\n{ENDING}"
+        ))
+        .unwrap();
+        assert!(
+            own.markdown
+                .starts_with("pH is 7.042 by view 1\n\n```constants\n")
+        );
+    }
+
+    #[test]
+    fn a_template_that_cannot_stand_in_a_page_is_refused() {
+        assert!(matches!(
+            with("line\n{{ state.nothing }}"),
+            Err(ReportError::Template(TemplateError::Failed { line: 2, .. }))
+        ));
+        assert!(matches!(
+            with("{% for x in"),
+            Err(ReportError::Template(TemplateError::Failed { .. }))
+        ));
+        let endless =
+            "{% for a in range(9999) %}{% for b in range(9999) %}x{% endfor %}{% endfor %}";
+        assert!(matches!(
+            with(endless),
+            Err(ReportError::Template(TemplateError::OutOfFuel { .. }))
+        ));
+        assert!(matches!(
+            with(&format!("```record\nionfolio record 1\n```\n{ENDING}")),
+            Err(ReportError::ReservedLine { line: 1, .. })
+        ));
+        assert!(matches!(with("pH\n"), Err(ReportError::NoConstants { .. })));
+        assert!(matches!(
+            Template::replaced("own.md", &" ".repeat(Template::LONGEST + 1)),
+            Err(TemplateError::TooLong { .. })
+        ));
+    }
 }

@@ -99,7 +99,7 @@ impl<'a> Bench<'a> {
             hand_value,
             comparison: comparison::of(self, &assembly, &solved, &surroundings),
             budget,
-            distribution: distribution::of(&assembly, &solved),
+            distribution: distribution::over_ph(&assembly, &solved, &state),
             constants: ConstantsUsed {
                 water: self.statement.conditions.pkw.clone(),
                 ..constants(&assembly)

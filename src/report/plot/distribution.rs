@@ -9,6 +9,9 @@ use crate::solution::answer::{Distribution, DistributionCurve, State};
 /// Fewest protonation states that make a plot worth its place: two are said by one pK.
 const FEWEST_STATES: usize = 3;
 
+/// Most characters of a name beside a panel.
+const LONGEST_NAME: usize = 20;
+
 /// The plot, or `None` where no ligand has more than one step.
 pub(super) fn over_ph(label: &str, distribution: &Distribution, state: &State) -> Option<Document> {
     let across = Range::of(distribution.ph.iter().copied())?;
@@ -31,7 +34,7 @@ pub(super) fn over_ph(label: &str, distribution: &Distribution, state: &State) -
     let with_capacity = if distribution.buffer_capacity.is_empty() {
         ""
     } else {
-        "; below it the buffer capacity"
+        "; below it the buffer capacity β"
     };
     Some(Document {
         title: format!("{label}: species over pH"),
@@ -77,7 +80,7 @@ fn shares(ligand: &str, distribution: &Distribution) -> Option<Panel> {
         .collect();
     Some(Panel {
         height: 210.0,
-        label: format!("share of {ligand}"),
+        label: format!("share of {}", shortened(ligand)),
         range: Range {
             low: 0.0,
             high: 1.1,
@@ -87,6 +90,16 @@ fn shares(ligand: &str, distribution: &Distribution) -> Option<Panel> {
         dots: Vec::new(),
         levels: Vec::new(),
     })
+}
+
+/// A name that fits beside a panel; the whole one stands in the description.
+fn shortened(name: &str) -> String {
+    if name.chars().count() <= LONGEST_NAME {
+        return name.to_owned();
+    }
+    let mut short: String = name.chars().take(LONGEST_NAME - 1).collect();
+    short.push('…');
+    short
 }
 
 /// The middle of the stretch in which a curve is near its top.
@@ -120,14 +133,14 @@ fn capacity(distribution: &Distribution) -> Option<Panel> {
     }
     .to_ticks(4);
     Some(Panel {
-        height: 110.0,
-        label: "mmol/L per pH".to_owned(),
+        height: 130.0,
+        label: "β in mmol/L per pH".to_owned(),
         range,
         ticks: 4,
         curves: vec![Curve {
             name: None,
             points,
-            style: 2,
+            style: 0,
         }],
         dots: Vec::new(),
         levels: Vec::new(),

@@ -11,8 +11,8 @@ mod titration;
 
 use crate::problem::{Problem, Statement};
 use crate::report::attachment::{self, Attachment};
+use crate::report::plot::document::Document;
 use crate::solution::answer::{Answer, Outcome};
-use document::Document;
 
 /// A plot with what a page says of it.
 #[derive(Debug)]

@@ -104,7 +104,8 @@ impl Panel {
                     pixels(frame.right())
                 ),
             );
-            push(svg, &text(frame.right() - 4.0, y - 4.0, "end", name));
+            let beside = if y - frame.top < 18.0 { 14.0 } else { -4.0 };
+            push(svg, &text(frame.right() - 4.0, y + beside, "end", name));
         }
         for curve in &self.curves {
             draw_curve(curve, frame, svg);

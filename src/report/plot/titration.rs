@@ -28,18 +28,7 @@ pub(super) fn curve(
     let dots = measured(readings);
     let upright = Range::of(points.iter().chain(&dots).map(|(_, ph)| *ph))?.to_ticks(7);
     let slope = Range::of(slopes.iter().map(|(_, slope)| *slope).chain([0.0]))?.to_ticks(4);
-    let marks: Vec<Mark> = titrated
-        .equivalence_points
-        .iter()
-        .map(|point| Mark {
-            at: point.volume_ml,
-            name: format!(
-                "{} mL, pH {}",
-                hundredths(point.volume_ml),
-                hundredths(point.ph)
-            ),
-        })
-        .collect();
+    let marks = equivalence_marks(titrated);
     let equivalence = marks
         .iter()
         .map(|mark| mark.name.as_str())
@@ -65,16 +54,31 @@ pub(super) fn curve(
         marks,
         panels: vec![
             Panel {
-                curves: line(points, 0),
+                curves: line(points),
                 dots,
                 ..panel(250.0, "pH", upright, 7)
             },
             Panel {
-                curves: line(slopes, 1),
+                curves: line(slopes),
                 ..panel(120.0, "slope in pH/mL", slope, 4)
             },
         ],
     })
+}
+
+fn equivalence_marks(titrated: &TitrationOutcome) -> Vec<Mark> {
+    titrated
+        .equivalence_points
+        .iter()
+        .map(|point| Mark {
+            at: point.volume_ml,
+            name: format!(
+                "{} mL, pH {}",
+                hundredths(point.volume_ml),
+                hundredths(point.ph)
+            ),
+        })
+        .collect()
 }
 
 /// The residuals of a fit over volume, with three standard deviations, or `None` where there are none.
@@ -85,7 +89,7 @@ pub(super) fn residuals(label: &str, fit: &Fit, readings: &Readings) -> Option<D
         .map(|point| point.volume_ml)
         .zip(fit.residuals.iter().copied())
         .collect();
-    let across = Range::of(dots.iter().map(|(volume, _)| *volume))?.to_ticks(10);
+    let across = Range::of(dots.iter().map(|(volume, _)| *volume).chain([0.0]))?.to_ticks(10);
     let three = 3.0 * fit.residual_standard_deviation;
     let upright = Range::of(
         dots.iter()
@@ -133,10 +137,10 @@ fn panel(height: f64, label: &str, range: Range, ticks: u32) -> Panel {
 }
 
 /// A curve without a name: it is alone in its panel.
-fn line(points: Vec<(f64, f64)>, style: usize) -> Vec<Curve> {
+fn line(points: Vec<(f64, f64)>) -> Vec<Curve> {
     vec![Curve {
         points,
-        style,
+        style: 0,
         name: None,
     }]
 }

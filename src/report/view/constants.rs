@@ -10,6 +10,8 @@ use serde::Serialize;
 pub(in crate::report) struct ConstantsView {
     /// One for each dissociation step.
     steps: Vec<StepView>,
+    /// Further constants that entered, each with its source.
+    further: Vec<String>,
     /// The content of the fenced `constants` block that ends the answer, ending in a line feed; print it with `safe`.
     pub(in crate::report) written: String,
 }
@@ -36,9 +38,9 @@ struct StepView {
 }
 
 impl ConstantsView {
-    pub(super) fn of(used: &ConstantsUsed) -> Self {
-        let mut steps: Vec<StepView> = used
-            .water
+    /// The constants used, with the user's own pKw where one was stated.
+    pub(super) fn of(water: Option<&Constant>, used: &ConstantsUsed) -> Self {
+        let mut steps: Vec<StepView> = water
             .iter()
             .map(|water| StepView::of("water", 0, water, None))
             .collect();
@@ -55,12 +57,8 @@ impl ConstantsView {
         }
         Self {
             steps,
-            written: substance::written(
-                used.water.as_ref(),
-                &used.ligands,
-                &used.ions,
-                &used.forms,
-            ),
+            further: used.further.clone(),
+            written: substance::written(water, &used.ligands, &used.ions, &used.forms),
         }
     }
 }

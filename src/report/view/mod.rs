@@ -127,7 +127,10 @@ impl View {
                 .map(judgement::ComparisonView::of),
             assumptions: judgement::assumptions(&answer.assumptions),
             cautions: judgement::cautions(&answer.cautions),
-            constants: constants::ConstantsView::of(&answer.constants),
+            constants: constants::ConstantsView::of(
+                statement.conditions.pkw.as_ref(),
+                &answer.constants,
+            ),
             working: Working::of(reporting, answer),
             plots: plots.iter().map(PlotView::of).collect(),
             annotations: AnnotationsView::of(statement),
@@ -140,7 +143,9 @@ impl View {
         match &answer.outcome {
             Outcome::Speciation => {}
             Outcome::Preparation(made) => {
-                self.preparation = Some(preparation::PreparationView::of(figures, answer, made));
+                self.preparation = Some(preparation::PreparationView::of(
+                    figures, statement, answer, made,
+                ));
             }
             Outcome::Adjustment(adjusted) => {
                 self.adjustment = Some(preparation::AdjustmentView::of(

@@ -14,7 +14,7 @@ use serde::Serialize;
 pub(in crate::report) struct PreparationView {
     /// In the order of work.
     additions: Vec<AdditionView>,
-    /// Final volume as printed, with its unit.
+    /// Final volume as written, with its unit.
     volume: String,
     /// pH at the temperature of preparation after rounding.
     ph_at_preparation: f64,
@@ -99,11 +99,23 @@ pub(in crate::report) struct MixingView {
 }
 
 impl PreparationView {
-    pub(super) fn of(figures: Figures, answer: &Answer, made: &PreparationOutcome) -> Self {
+    pub(super) fn of(
+        figures: Figures,
+        statement: &Statement,
+        answer: &Answer,
+        made: &PreparationOutcome,
+    ) -> Self {
+        let as_written = match &statement.problem {
+            Problem::Preparation(asked) => {
+                let volume = &asked.target.volume.measured;
+                Some(format!("{} {}", volume.decimal, volume.unit.symbol()))
+            }
+            _ => None,
+        };
         let away = (made.temperature_of_use_c - answer.model.temperature_c).abs();
         Self {
             additions: additions(figures, &made.additions),
-            volume: volume(made.volume),
+            volume: as_written.unwrap_or_else(|| volume(made.volume)),
             ph_at_preparation: made.ph_at_preparation,
             ph_at_use: made.ph_at_use,
             temperature_of_use: format!("{} °C", figures::short(made.temperature_of_use_c)),
