@@ -1,6 +1,6 @@
 //! Own constants: in the block, in a file beside it, or as an answer carries them.
 
-use crate::block::amount;
+use crate::block::figure;
 use crate::block::reader::Reader;
 use crate::substance::{
     StoredConstants, StoredEquation, StoredForm, StoredIon, StoredPk, StoredSubstance,
@@ -119,7 +119,7 @@ fn figure(
     diagnostics: &mut Vec<Diagnostic>,
 ) -> Option<String> {
     let scalar = keys.text(key, diagnostics)?;
-    amount::number(scalar, diagnostics).map(|number| number.to_string())
+    figure::number(scalar, diagnostics).map(|number| number.to_string())
 }
 
 fn texts(keys: &mut Keys<'_>, key: &'static str, diagnostics: &mut Vec<Diagnostic>) -> Vec<String> {
@@ -178,7 +178,7 @@ fn substance(
                 let Some(scalar) = item.as_text(diagnostics) else {
                     continue;
                 };
-                let Some(number) = amount::number(scalar, diagnostics) else {
+                let Some(number) = figure::number(scalar, diagnostics) else {
                     continue;
                 };
                 let Some(source) = source.clone() else {
@@ -220,7 +220,7 @@ fn value(
     let mut keys = mapping.keys();
     let number = keys
         .required_text("value", diagnostics)
-        .and_then(|scalar| amount::number(scalar, diagnostics));
+        .and_then(|scalar| figure::number(scalar, diagnostics));
     let own_source = text(&mut keys, "source", diagnostics).or_else(|| source.map(str::to_owned));
     if own_source.is_none() {
         diagnostics.push(

@@ -3,7 +3,7 @@
 use crate::block::reader::Reader;
 use crate::block::{contents, remarks};
 use crate::problem::{
-    Composition, DilutionSeries, Ingredient, InputId, MadeUp, Mixing, SolutionPortion,
+    Composition, DilutionSeries, Ingredient, Input, InputId, MadeUp, Mixing, SolutionPortion,
 };
 use crate::quantity::{Dimension, Volume};
 use crate::text::Rule;
@@ -45,6 +45,9 @@ pub(super) fn read(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<Mixin
             ));
         }
     }
+    if let MadeUp::To(whole) = &made_up {
+        overfull(reader, whole, &ingredients);
+    }
     Some(Mixing {
         mixture: Composition {
             made_up,
@@ -72,7 +75,7 @@ fn own(reader: &mut Reader<'_>, keys: &mut Keys<'_>, id: &InputId) -> Option<Ing
     if matches!(&node.value, Value::Text(scalar) if scalar.text() == "water") {
         return volume.map(Ingredient::Water);
     }
-    let ingredients = contents::ingredients(reader, node, id);
+    let ingredients = contents::ingredients(reader, node, id, volume.as_ref());
     let volume = volume?;
     Some(Ingredient::Solution(SolutionPortion {
         reference: None,
@@ -82,6 +85,26 @@ fn own(reader: &mut Reader<'_>, keys: &mut Keys<'_>, id: &InputId) -> Option<Ing
         }),
         volume,
     }))
+}
+
+/// The portions must fit into what they are made up to.
+fn overfull(reader: &mut Reader<'_>, whole: &Input<Volume>, portions: &[Ingredient]) {
+    let sum: f64 = portions
+        .iter()
+        .map(|portion| match portion {
+            Ingredient::Solution(portion) => portion.volume.value().base(),
+            Ingredient::Water(volume) => volume.value().base(),
+            Ingredient::Substance(_) => 0.0,
+        })
+        .sum();
+    if sum > whole.value().base() * (1.0 + 1e-9) {
+        let span = reader.place(&whole.id);
+        reader.error(
+            Rule::OutOfRange,
+            span,
+            format!("the portions together are more than `{}`", whole.measured),
+        );
+    }
 }
 
 fn dilution(reader: &mut Reader<'_>, mapping: &Mapping) -> Option<DilutionSeries> {

@@ -6,19 +6,27 @@
 
 mod adjustment;
 mod amount;
+mod charge;
+mod choice;
 mod conditions;
 mod constants;
 mod contents;
 mod context;
 mod defaults;
+mod figure;
+mod fit;
+mod item;
 mod keys;
 mod mixing;
 mod outline;
 mod preparation;
+mod range;
 mod reader;
 mod readings;
 mod remarks;
 mod source;
+mod spread;
+mod stock;
 mod titration;
 
 pub use context::{Attachments, Context, SolutionError, Solutions};

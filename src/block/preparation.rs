@@ -1,11 +1,11 @@
 //! `preparation`: a buffer to be made.
 
-use crate::block::conditions::temperature_of_use;
+use crate::block::amount::Piece;
 use crate::block::reader::Reader;
 use crate::block::{amount, contents, remarks, source};
 use crate::problem::{
-    BufferChoice, InputId, IonicStrengthTarget, Preparation, PreparationTarget, Readability,
-    Source, Taken, Weighed,
+    BufferChoice, Composition, Ingredient, InputId, IonicStrengthTarget, MadeUp, Preparation,
+    PreparationTarget, Readability, Source, Taken, Weighed,
 };
 use crate::quantity::{Dimension, Mass, Volume};
 use crate::text::{Diagnostic, Rule};
@@ -20,60 +20,83 @@ pub(super) fn read(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<Prepa
         pipette: reader.top(keys, "pipette"),
         flask: reader.top(keys, "flask"),
     };
-    let avoid = remarks::names(reader, keys, "avoid");
-    let from = keys.take("from");
-    let buffer = keys.text("buffer", &mut reader.diagnostics);
+    let buffer = buffer(reader, keys);
     let weighed = keys.take("weighed");
-    let heading = keys.whole().heading();
     let target = keys
         .required("target", &mut reader.diagnostics)
         .and_then(|node| node.as_mapping(&mut reader.diagnostics))
         .and_then(|mapping| target(reader, mapping));
-    let choice = match (from, buffer) {
-        (Some(node), None) => sources(reader, node).map(BufferChoice::From),
-        (None, Some(scalar)) if scalar.text() == "suggest" => Some(BufferChoice::Suggest { avoid }),
-        (None, Some(scalar)) => {
-            reader.diagnostics.push(
-                Diagnostic::error(
-                    Rule::UnknownChoice,
-                    scalar.span(),
-                    format!("`{}` is no choice of a buffer", scalar.text()),
-                )
-                .expecting("`suggest`, or `from: [...]` in place of `buffer`"),
-            );
-            None
+    let (buffer, target) = (buffer?, target?);
+    let weighed = match (weighed, &buffer) {
+        (None, _) => Vec::new(),
+        (Some(node), BufferChoice::From(list)) => {
+            let salt = usize::from(target.ionic_strength.is_some());
+            taken(reader, node, list.len() + salt)
         }
-        (Some(node), Some(_)) => {
+        (Some(node), BufferChoice::Suggest { .. }) => {
             reader.error(
                 Rule::ConflictingKeys,
                 node.span,
-                "`from` and `buffer` exclude each other",
+                "nothing was weighed yet of a buffer that is to be suggested",
             );
-            None
+            Vec::new()
         }
-        (None, None) => {
-            reader.diagnostics.push(
-                Diagnostic::error(
-                    Rule::MissingKey,
-                    heading,
-                    "what the buffer is made from is not stated",
-                )
-                .expecting("`from: [...]`, or `buffer: suggest`"),
-            );
-            None
-        }
-    };
-    let choice = choice?;
-    let weighed = match (&choice, weighed) {
-        (BufferChoice::From(list), Some(node)) => taken(reader, node, list.len()),
-        _ => Vec::new(),
     };
     Some(Preparation {
-        target: target?,
-        buffer: choice,
+        target,
+        buffer,
         readability,
         weighed,
     })
+}
+
+/// `from: [...]`, or `buffer: suggest` with `avoid`.
+fn buffer(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<BufferChoice> {
+    let from = keys.take("from");
+    let buffer = keys.text("buffer", &mut reader.diagnostics);
+    let unwanted = keys.take_entry("avoid").map(|entry| entry.key.span());
+    let avoid = remarks::names(reader, keys, "avoid");
+    let conflict = |reader: &mut Reader<'_>, span| {
+        reader.error(
+            Rule::ConflictingKeys,
+            span,
+            "`from` says what the buffer is made from; `buffer` and `avoid` ask for suggestions",
+        );
+    };
+    let Some(node) = from else {
+        return suggested(reader, keys, buffer, avoid);
+    };
+    for span in [buffer.map(Scalar::span), unwanted].into_iter().flatten() {
+        conflict(reader, span);
+    }
+    sources(reader, node).map(BufferChoice::From)
+}
+
+fn suggested(
+    reader: &mut Reader<'_>,
+    keys: &Keys<'_>,
+    buffer: Option<&Scalar>,
+    avoid: Vec<String>,
+) -> Option<BufferChoice> {
+    let diagnostic = match buffer {
+        Some(scalar) if scalar.text() == "suggest" => return Some(BufferChoice::Suggest { avoid }),
+        Some(scalar) => Diagnostic::error(
+            Rule::UnknownChoice,
+            scalar.span(),
+            format!("`{}` is no choice of a buffer", scalar.text()),
+        )
+        .expecting("`suggest`, or `from: [...]` in place of `buffer`"),
+        None => Diagnostic::error(
+            Rule::MissingKey,
+            keys.whole().heading(),
+            "what the buffer is made from is not stated",
+        )
+        .expecting("`from: [...]`, or `buffer: suggest`"),
+    };
+    if buffer.is_some() || !keys.whole().is_partial() {
+        reader.diagnostics.push(diagnostic);
+    }
+    None
 }
 
 fn sources(reader: &mut Reader<'_>, node: &Node) -> Option<Vec<Source>> {
@@ -104,12 +127,15 @@ fn target(reader: &mut Reader<'_>, mapping: &Mapping) -> Option<PreparationTarge
     let ph = reader.required(&mut keys, "pH", &id);
     let volume = reader.required::<Volume>(&mut keys, "volume", &id);
     let concentration = reader.required(&mut keys, "concentration", &id);
-    let temperature_of_use = temperature_of_use(reader, &mut keys, &id);
-    let ionic_strength = match keys.text("ionic strength", &mut reader.diagnostics) {
-        Some(scalar) => Some(ionic_strength(reader, scalar, &id)?),
+    let temperature_of_use = reader.amount(&mut keys, "temperature", &id);
+    let ionic_strength = keys
+        .text("ionic strength", &mut reader.diagnostics)
+        .map(|scalar| ionic_strength(reader, scalar, &id));
+    keys.finish(&mut reader.diagnostics);
+    let ionic_strength = match ionic_strength {
+        Some(found) => Some(found?),
         None => None,
     };
-    keys.finish(&mut reader.diagnostics);
     Some(PreparationTarget {
         ph: ph?,
         volume: volume?,
@@ -125,7 +151,7 @@ fn ionic_strength(
     scalar: &Scalar,
     id: &InputId,
 ) -> Option<IonicStrengthTarget> {
-    let Some((value, salt)) = scalar.text().split_once(" with ") else {
+    let Some((value, salt)) = Piece::from(scalar).split_once(" with ") else {
         reader.diagnostics.push(
             Diagnostic::error(
                 Rule::BadTarget,
@@ -136,34 +162,22 @@ fn ionic_strength(
         );
         return None;
     };
-    let measured = amount::read_text(value, scalar, &mut reader.diagnostics)?;
-    let Ok(form) = reader.catalogue.find(salt.trim()).cloned() else {
-        reader.error(
-            Rule::UnknownSubstance,
-            scalar.span(),
-            format!("`{}` is not in the library", salt.trim()),
-        );
-        return None;
-    };
-    if form.ligands().next().is_some()
-        || form.protons() != 0
-        || form.charge != 0
-        || form.formula.is_none()
-    {
+    let value = reader.input(id.within("ionic strength"), value);
+    let form = contents::substance(reader, salt)?;
+    let inert = form.ligands().next().is_none() && form.protons() == 0 && form.charge == 0;
+    if !inert || form.formula.is_none() {
         reader.diagnostics.push(
             Diagnostic::error(
                 Rule::BadTarget,
-                scalar.span(),
+                salt.span(),
                 format!("{} is no inert salt", form.name),
             )
             .expecting("a salt whose ions take no proton, such as sodium chloride"),
         );
         return None;
     }
-    let id = id.within("ionic strength");
-    reader.input_place(&id, scalar.span());
     Some(IonicStrengthTarget {
-        value: crate::problem::Input::new(id, measured),
+        value: value?,
         salt: form,
     })
 }
@@ -178,7 +192,7 @@ fn taken(reader: &mut Reader<'_>, node: &Node, sources: usize) -> Vec<Weighed> {
         if scalar.text() == "-" {
             continue;
         }
-        if index > sources {
+        if index >= sources {
             reader.error(
                 Rule::OutOfRange,
                 scalar.span(),
@@ -206,13 +220,13 @@ pub(super) fn liquid(
     reader: &mut Reader<'_>,
     keys: &mut Keys<'_>,
     id: &InputId,
-) -> Option<crate::problem::Composition> {
+) -> Option<Composition> {
     if let Some(scalar) = keys.text("solution", &mut reader.diagnostics) {
         let portion = contents::portion(reader, keys, scalar, id)?;
-        return Some(crate::problem::Composition {
-            made_up: crate::problem::MadeUp::To(portion.volume.clone()),
-            ingredients: vec![crate::problem::Ingredient::Solution(portion)],
+        return Some(Composition {
+            made_up: MadeUp::To(portion.volume.clone()),
+            ingredients: vec![Ingredient::Solution(portion)],
         });
     }
-    contents::composition(reader, keys, id, true)
+    contents::composition(reader, keys, id)
 }

@@ -1,14 +1,16 @@
 //! The block as a whole: its keys, in whatever order they stand, to a statement.
 
+use crate::block::amount::Piece;
+use crate::block::range::Ranged;
 use crate::block::{
-    Context, Defaults, adjustment, amount, conditions, constants, contents, mixing, preparation,
-    remarks, titration,
+    Context, Defaults, KEYS, adjustment, amount, conditions, constants, contents, mixing,
+    preparation, range, remarks, titration,
 };
 use crate::problem::{Input, InputId, Label, Problem, SolutionReference, Speciation, Statement};
-use crate::quantity::Dimension;
+use crate::quantity::Measured;
 use crate::substance::Catalogue;
 use crate::text::{Diagnostic, Rule, Span};
-use crate::yaml::{self, Keys, Limits, Scalar};
+use crate::yaml::{self, Keys, Limits};
 use std::collections::BTreeMap;
 
 /// Where each input was typed, in the block's text.
@@ -86,19 +88,31 @@ pub(super) struct Reader<'a> {
 }
 
 impl Reader<'_> {
-    /// Reads an amount as an input and remembers its place; a negative one is refused where the dimension has none.
-    pub(super) fn input<D: Dimension>(&mut self, id: InputId, scalar: &Scalar) -> Option<Input<D>> {
-        let measured = amount::read::<D>(scalar, &mut self.diagnostics)?;
-        self.places.insert(id.clone(), scalar.span());
-        if measured.value().base() < 0.0 {
-            self.error(
-                Rule::OutOfRange,
-                scalar.span(),
-                format!("{} is not negative", D::NAME),
-            );
-            return None;
+    /// Reads an amount as an input and remembers its place; what is not possible is refused.
+    pub(super) fn input<'s, D: Ranged>(
+        &mut self,
+        id: InputId,
+        piece: impl Into<Piece<'s>>,
+    ) -> Option<Input<D>> {
+        let piece = piece.into();
+        let measured = amount::read::<D>(piece, &mut self.diagnostics)?;
+        self.checked(id, piece, measured)
+    }
+
+    /// An amount that was read already, as an input.
+    pub(super) fn checked<D: Ranged>(
+        &mut self,
+        id: InputId,
+        piece: Piece<'_>,
+        measured: Measured<D>,
+    ) -> Option<Input<D>> {
+        self.places.insert(id.clone(), piece.span());
+        if measured.value().is_possible() {
+            return Some(Input::new(id, measured));
         }
-        Some(Input::new(id, measured))
+        self.diagnostics
+            .push(range::outside(piece.span(), measured));
+        None
     }
 
     /// Remembers the place of an input that was not read as a single amount.
@@ -106,8 +120,13 @@ impl Reader<'_> {
         self.places.insert(id.clone(), span);
     }
 
+    /// The place of an input that was read; the beginning of the block where none is known.
+    pub(super) fn place(&self, id: &InputId) -> Span {
+        self.places.get(id).copied().unwrap_or(Span::at(0))
+    }
+
     /// The amount of a key of the block itself, if the key is there.
-    pub(super) fn top<D: Dimension>(
+    pub(super) fn top<D: Ranged>(
         &mut self,
         keys: &mut Keys<'_>,
         key: &'static str,
@@ -117,7 +136,7 @@ impl Reader<'_> {
     }
 
     /// The amount of a key, if the key is there.
-    pub(super) fn amount<D: Dimension>(
+    pub(super) fn amount<D: Ranged>(
         &mut self,
         keys: &mut Keys<'_>,
         key: &'static str,
@@ -128,7 +147,7 @@ impl Reader<'_> {
     }
 
     /// The amount of a key that must be there.
-    pub(super) fn required<D: Dimension>(
+    pub(super) fn required<D: Ranged>(
         &mut self,
         keys: &mut Keys<'_>,
         key: &'static str,
@@ -206,12 +225,12 @@ impl Reader<'_> {
                     .expecting(format!("one of {}", Problem::TASKS.join(", "))),
                 );
             }
-            self.skip_task_keys(keys);
+            skip_task_keys(keys);
             return None;
         };
         let scalar = node.as_text(&mut self.diagnostics)?;
         match scalar.text() {
-            "speciation" => contents::composition(self, keys, &InputId::new("contents"), true)
+            "speciation" => contents::composition(self, keys, &InputId::new("contents"))
                 .map(|composition| Problem::Speciation(Speciation { composition })),
             "preparation" => {
                 preparation::read(self, keys).map(|task| Problem::Preparation(Box::new(task)))
@@ -233,17 +252,17 @@ impl Reader<'_> {
                     .expecting(format!("one of {}", Problem::TASKS.join(", ")))
                     .did_you_mean(other, Problem::TASKS),
                 );
-                self.skip_task_keys(keys);
+                skip_task_keys(keys);
                 None
             }
         }
     }
+}
 
-    /// Without a task nobody can say which of its keys belong; none is reported as unknown.
-    fn skip_task_keys(&mut self, keys: &mut Keys<'_>) {
-        for entry in super::KEYS.iter().filter(|entry| !entry.tasks.is_empty()) {
-            keys.take(entry.key);
-        }
+/// Without a task nobody can say which of its keys belong; none is reported as unknown.
+fn skip_task_keys(keys: &mut Keys<'_>) {
+    for entry in KEYS.iter().filter(|entry| !entry.tasks.is_empty()) {
+        keys.take(entry.key);
     }
 }
 
