@@ -143,3 +143,85 @@ fn fitting(reader: &mut Reader<'_>, with: &Source, taken: &Taken, span: Span) ->
     );
     None
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{one_fault, problem};
+    use crate::problem::Problem;
+
+    const START: &str = "start: {volume: 500 mL, contents: {tris: 50 mmol/L}, measured pH: 8.31}\n";
+    const WITH: &str = "with: {substance: hydrochloric acid, concentration: 1.000 mol/L}\n";
+
+    #[test]
+    fn the_example_of_the_language_is_read() {
+        let keys = format!("{START}{WITH}target:\n  pH: 7.40\n");
+        let Problem::Adjustment(task) = problem("adjustment", &keys) else {
+            panic!()
+        };
+        assert_eq!(task.measured_ph.unwrap().value().base(), 8.31);
+        assert!(matches!(task.goal, AdjustmentGoal::Reach(_)));
+    }
+
+    #[test]
+    fn a_start_may_be_a_portion_of_another_solution() {
+        let keys = format!(
+            "start: {{solution: naoh-01, volume: 100 mL}}\n{WITH}add: 2.00 mL\ndrop: 0.05 mL\n"
+        );
+        let Problem::Adjustment(task) = problem("adjustment", &keys) else {
+            panic!()
+        };
+        assert!(matches!(task.start.made_up, MadeUp::To(_)));
+        assert!(matches!(task.goal, AdjustmentGoal::Add(Taken::Volume(_))));
+    }
+
+    #[test]
+    fn faults_of_an_adjustment() {
+        for (keys, rule, place, help) in [
+            (
+                format!("{START}target: {{pH: 7}}\n"),
+                Rule::MissingKey,
+                "label",
+                "`with: ...`",
+            ),
+            (
+                format!("{WITH}target: {{pH: 7}}\n"),
+                Rule::MissingKey,
+                "label",
+                "`start: ...`",
+            ),
+            (
+                format!("{START}{WITH}"),
+                Rule::MissingKey,
+                "label",
+                "add: 2.00 mL",
+            ),
+            (
+                format!("{START}{WITH}target: {{pH: 7}}\nadd: 1 mL\n"),
+                Rule::ConflictingKeys,
+                "1 mL",
+                "",
+            ),
+            (
+                format!("{START}{WITH}add: 1 g\n"),
+                Rule::AmountNeeded,
+                "1 g",
+                "a volume",
+            ),
+            (
+                format!("{START}with: NaOH\nadd: 1 mL\n"),
+                Rule::AmountNeeded,
+                "1 mL",
+                "a mass",
+            ),
+            (
+                format!("start: {{contents: {{tris: 1 mmol/L}}}}\n{WITH}add: 1 mL\n"),
+                Rule::VolumeNeeded,
+                "start",
+                "`volume: ...`",
+            ),
+        ] {
+            one_fault("adjustment", &keys, rule, place, help);
+        }
+    }
+}

@@ -111,3 +111,50 @@ fn corrected(corrections: &Corrections) -> f64 {
         * water.map_or(1.0, |input| 1.0 - input.value().base())
         * factor.map_or(1.0, |input| input.value().base())
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::block::trial::{one_fault, problem};
+    use crate::text::Rule;
+
+    #[test]
+    fn ions_that_leave_no_charge_are_taken() {
+        for contents in [
+            "{sodium ion: 0.10 mol/L, calcium ion: 0.05 mol/L, chloride ion: 0.20 mol/L}",
+            "{sodium ion: 0.1 mol/kg, chloride ion: 0.1 mol/kg}",
+            "{sodium ion: 0.05 mol, chloride ion: 0.1 mol/L}",
+        ] {
+            let keys = format!("volume: 0.5 L\ncontents: {contents}\n");
+            drop(problem("speciation", &keys));
+        }
+    }
+
+    #[test]
+    fn a_charge_that_is_left_is_told_with_its_size_and_a_partner() {
+        for (contents, place, help) in [
+            (
+                "{sodium ion: 0.1 mol/L}",
+                "sodium ion",
+                "`chloride ion: 0.1000 mol/L`",
+            ),
+            (
+                "{chloride ion: 20 mmol/L, NaCl: 1 mol/L}",
+                "chloride ion",
+                "`sodium ion: 0.02000 mol/L`",
+            ),
+            (
+                "{sodium ion: 0.05 mol, chloride ion: 0.05 mol/L}",
+                "sodium ion",
+                "`chloride ion: 0.05000 mol/L`",
+            ),
+            (
+                "{sodium ion: 0.1 mol/kg, NaCl: 1 mol/L}",
+                "sodium ion",
+                "0.1000 mol/kg",
+            ),
+        ] {
+            let keys = format!("volume: 0.5 L\ncontents: {contents}\n");
+            one_fault("speciation", &keys, Rule::UnbalancedIon, place, help);
+        }
+    }
+}

@@ -268,3 +268,180 @@ pub(super) fn substance<'s>(
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{faults, one_fault, problem, statement};
+    use crate::problem::Problem;
+
+    fn ingredients(keys: &str) -> Vec<Ingredient> {
+        match problem("speciation", keys) {
+            Problem::Speciation(task) => task.composition.ingredients,
+            other => panic!("{other:?}"),
+        }
+    }
+
+    fn amounts(keys: &str) -> Vec<ContentAmount> {
+        let of = |ingredient| match ingredient {
+            Ingredient::Substance(content) => content.amount,
+            other => panic!("{other:?}"),
+        };
+        ingredients(keys).into_iter().map(of).collect()
+    }
+
+    #[test]
+    fn the_unit_tells_what_is_stated() {
+        let amounts = amounts(
+            "volume: 1 L\ncontents:\n  malonic acid: 0.0350 mol/L\n  NaCl: 0.1 mol/kg\n  tris: 6 g/L\n  KCl: 7 g\n  citric acid: 2 mmol\n",
+        );
+        assert!(matches!(amounts[0], ContentAmount::Concentration(_)));
+        assert!(matches!(amounts[1], ContentAmount::Molality(_)));
+        assert!(matches!(amounts[2], ContentAmount::MassConcentration(_)));
+        assert!(matches!(amounts[3], ContentAmount::Mass(_)));
+        assert!(matches!(amounts[4], ContentAmount::Amount(_)));
+    }
+
+    #[test]
+    fn an_input_has_its_name_and_its_place() {
+        let text = "label: a\ntask: speciation\ncontents:\n  malonic acid: 0.0350 mol/L\n";
+        let reading = crate::block::trial::reading(text);
+        let id = InputId::new("contents")
+            .within("malonic acid")
+            .within("concentration");
+        assert_eq!(
+            reading.places.of(&id).and_then(|span| span.of(text)),
+            Some("0.0350 mol/L")
+        );
+    }
+
+    #[test]
+    fn water_is_written_so_and_nothing_is_not() {
+        assert_eq!(ingredients("contents: water\n"), []);
+        one_fault(
+            "speciation",
+            "contents: []\n",
+            Rule::EmptyContents,
+            "[]",
+            "contents: water",
+        );
+        one_fault(
+            "speciation",
+            "contents:\n",
+            Rule::MissingValue,
+            "",
+            "`water`",
+        );
+    }
+
+    #[test]
+    fn masses_need_the_volume() {
+        one_fault(
+            "speciation",
+            "contents:\n  NaCl: 5 g\n",
+            Rule::VolumeNeeded,
+            "label",
+            "`volume: ...`",
+        );
+    }
+
+    #[test]
+    fn faults_of_a_short_item() {
+        for (keys, rule, place, help) in [
+            (
+                "contents:\n  malonic acd: 1 mol/L\n",
+                Rule::UnknownSubstance,
+                "malonic acd",
+                "`malonic acid`",
+            ),
+            (
+                "contents:\n  NaCl: 5 mL\n",
+                Rule::AmountNeeded,
+                "5 mL",
+                "long form",
+            ),
+            (
+                "contents:\n  HCl: 37 % w/w\n",
+                Rule::AmountNeeded,
+                "37 % w/w",
+                "density",
+            ),
+            ("contents:\n  HCl: 0.1 N\n", Rule::RefusedUnit, "N", "mol/L"),
+            (
+                "contents:\n  HCl: 0.1\n",
+                Rule::MissingUnit,
+                "0.1",
+                "mol/kg",
+            ),
+            ("contents:\n  HCl: 25 °C\n", Rule::WrongUnit, "°C", "mol/kg"),
+            (
+                "contents:\n  HCl: 0,1 mol/L\n",
+                Rule::DecimalComma,
+                "0,1",
+                "`0.1`",
+            ),
+            (
+                "contents:\n  HCl: -0.1 mol/L\n",
+                Rule::OutOfRange,
+                "-0.1 mol/L",
+                "more than nothing",
+            ),
+            (
+                "contents:\n  HCl: 100 mol/L\n",
+                Rule::OutOfRange,
+                "100 mol/L",
+                "60 mol/L",
+            ),
+        ] {
+            one_fault("speciation", keys, rule, place, help);
+        }
+    }
+
+    #[test]
+    fn an_unknown_substance_does_not_hide_what_is_wrong_with_its_amount() {
+        let found = faults("speciation", "contents:\n  malonic acd: 0,1 mol/L\n");
+        let rules: Vec<Rule> = found.iter().map(|fault| fault.0).collect();
+        assert_eq!(rules, [Rule::UnknownSubstance, Rule::DecimalComma]);
+    }
+
+    #[test]
+    fn one_substance_under_two_names_is_found_out() {
+        one_fault(
+            "speciation",
+            "contents:\n  NaCl: 0.1 mol/L\n  sodium chloride: 0.2 mol/L\n",
+            Rule::DuplicateSubstance,
+            "sodium chloride",
+            "add the amounts",
+        );
+    }
+
+    #[test]
+    fn solutions_of_other_blocks_flow_in_under_their_names() {
+        let statement = statement(
+            "label: a\ntask: speciation\nvolume: 1 L\ncontents:\n  - solution: stocks/2026-10.md#naoh-01\n    volume: 10.00 mL\n",
+        );
+        let Problem::Speciation(task) = statement.problem else {
+            panic!()
+        };
+        let [Ingredient::Solution(portion)] = task.composition.ingredients.as_slice() else {
+            panic!()
+        };
+        let [Ingredient::Substance(content)] = portion.composition.ingredients.as_slice() else {
+            panic!()
+        };
+        assert_eq!(
+            content.id.as_str(),
+            "stocks/2026-10.md#naoh-01 : contents / 1 sodium hydroxide"
+        );
+        let keys =
+            |name| format!("volume: 1 L\ncontents:\n  - solution: {name}\n    volume: 1 mL\n");
+        for (name, rule) in [
+            ("naoh-1", Rule::UnknownSolution),
+            ("round", Rule::CircularSolution),
+            ("wrong", Rule::SolutionNotUsable),
+        ] {
+            let found = faults("speciation", &keys(name));
+            assert_eq!((found[0].0, found[0].1.as_str()), (rule, name));
+        }
+    }
+}

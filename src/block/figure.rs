@@ -27,9 +27,12 @@ pub(super) fn number_in(
     match Decimal::parse(bare) {
         Ok(number) => Some(number),
         Err(error) => {
-            diagnostics.push(
-                bad_number(scalar.span(), bare, &error).expecting(format!("a number in {unit}")),
-            );
+            let fault = bad_number(scalar.span(), bare, &error);
+            diagnostics.push(if unit.is_empty() {
+                fault
+            } else {
+                fault.expecting(format!("a number in {unit}"))
+            });
             None
         }
     }

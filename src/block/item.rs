@@ -2,12 +2,9 @@
 
 use crate::block::amount::{Accepted, Piece, Written, unit_of};
 use crate::block::reader::Reader;
-use crate::block::{contents, stock};
-use crate::problem::{Content, ContentAmount, Corrections, Input, InputId, Taken, Trace};
-use crate::quantity::{
-    Amount, AmountConcentration, Dimension, Mass, MassConcentration, MassFraction, Measured,
-    Molality, Number, Unit,
-};
+use crate::block::{certificate, contents, replicates, stock};
+use crate::problem::{Content, ContentAmount, Corrections, InputId, Taken};
+use crate::quantity::{Amount, Dimension, Mass, MassConcentration, Molality, Unit};
 use crate::substance::Form;
 use crate::text::{Diagnostic, Rule, Span};
 use crate::yaml::{Keys, Node, Scalar};
@@ -75,8 +72,8 @@ pub(super) fn read(
     let id = form
         .as_ref()
         .map_or_else(|| id.clone(), |form| id.renamed(&form.name));
-    let corrections = corrections(reader, keys, &id);
-    let trace = trace(reader, keys);
+    let corrections = certificate::corrections(reader, keys, &id);
+    let trace = certificate::trace(reader, keys);
     let stated = Stated::take(reader, keys);
     let amount = stated.amount(reader, form.as_deref(), &id, name.span());
     let (form, amount) = (form?, amount?);
@@ -187,7 +184,7 @@ impl<'m> Stated<'m> {
         if let Some(node) = self.replicates {
             let single = [self.mass, self.volume, self.amount, self.concentration];
             if single.iter().all(Option::is_none) {
-                return replicated(reader, form, node, id);
+                return replicates::read(reader, form, node, id);
             }
             reader.error(
                 Rule::ConflictingKeys,
@@ -267,26 +264,7 @@ impl<'m> Stated<'m> {
             );
         }
         let weighed = matches!(amount, ContentAmount::Mass(_));
-        idle_corrections(reader, corrections, weighed);
-    }
-}
-
-/// Reports a titre of a solid, and a purity of anything but a solid that is weighed.
-pub(super) fn idle_corrections(reader: &mut Reader<'_>, corrections: &Corrections, weighed: bool) {
-    let (idle, message) = if weighed {
-        (
-            [corrections.factor.as_ref().map(|input| &input.id), None],
-            "a titre belongs to the concentration of a solution; for a solid state `purity`",
-        )
-    } else {
-        (
-            [&corrections.purity, &corrections.water].map(|input| input.as_ref().map(|i| &i.id)),
-            "purity and water correct a mass that was weighed; a concentration takes a `factor`",
-        )
-    };
-    for id in idle.into_iter().flatten() {
-        let span = reader.place(id);
-        reader.error(Rule::ConflictingKeys, span, message);
+        certificate::idle_corrections(reader, corrections, weighed);
     }
 }
 
@@ -311,146 +289,190 @@ fn concentration(
     typed(reader, form, scalar.into(), id, CONCENTRATION)
 }
 
-/// `replicates: [19.21 g, 19.22 g]`: the mean, with the standard deviation of the mean.
-fn replicated(
-    reader: &mut Reader<'_>,
-    form: Option<&Form>,
-    node: &Node,
-    id: &InputId,
-) -> Option<ContentAmount> {
-    let items = node.as_list(&mut reader.diagnostics)?;
-    let read: Vec<Option<ContentAmount>> = items
-        .iter()
-        .map(|item| {
-            let scalar = item.as_text(&mut reader.diagnostics)?;
-            any_amount(reader, form, scalar, id)
-        })
-        .collect();
-    let readings: Vec<ContentAmount> = read.into_iter().collect::<Option<_>>()?;
-    let mean = match readings.first() {
-        Some(ContentAmount::Mass(first)) => mean(first, &readings, |reading| match reading {
-            ContentAmount::Mass(input) => Some(input.measured),
-            _ => None,
-        })
-        .map(ContentAmount::Mass),
-        Some(ContentAmount::Amount(first)) => mean(first, &readings, |reading| match reading {
-            ContentAmount::Amount(input) => Some(input.measured),
-            _ => None,
-        })
-        .map(ContentAmount::Amount),
-        Some(ContentAmount::Concentration(first)) => {
-            mean::<AmountConcentration>(first, &readings, |reading| match reading {
-                ContentAmount::Concentration(input) => Some(input.measured),
-                _ => None,
-            })
-            .map(ContentAmount::Concentration)
+#[cfg(test)]
+mod tests {
+    use crate::block::trial::{one_fault, problem};
+    use crate::problem::{ContentAmount, Ingredient, Problem, Strength, Taken};
+    use crate::quantity::Dimension;
+    use crate::text::Rule;
+
+    fn content(item: &str) -> crate::problem::Content {
+        let keys = format!("volume: 1.000 L\ncontents:\n  - {{{item}}}\n");
+        match problem("speciation", &keys) {
+            Problem::Speciation(task) => match task.composition.ingredients.as_slice() {
+                [Ingredient::Substance(content)] => (**content).clone(),
+                other => panic!("{other:?}"),
+            },
+            other => panic!("{other:?}"),
         }
-        _ => None,
-    };
-    if mean.is_none() {
-        reader.diagnostics.push(
-            Diagnostic::error(
-                Rule::EmptyList,
-                node.span,
-                "replicates are at least two readings in one unit of g, mol or mol/L",
-            )
-            .expecting("`replicates: [19.21 g, 19.22 g]`"),
+    }
+
+    #[test]
+    fn a_weighed_salt_keeps_what_its_certificate_says() {
+        let content = content(
+            "substance: sodium dihydrogen phosphate dihydrate, mass: 3.9003 g, purity: 99.5 ± 0.2 % (k=2), water: 0.1 %, lot: K-2291, expiry: 2027-03",
         );
+        assert!(matches!(content.amount, ContentAmount::Mass(_)));
+        let purity = content.corrections.purity.unwrap();
+        assert_eq!(purity.measured.decimal.significant_figures(), 3);
+        assert_eq!(content.trace.lot.as_deref(), Some("K-2291"));
+        assert_eq!(content.trace.expiry.as_deref(), Some("2027-03"));
     }
-    if let Some(input) = mean.as_ref().and_then(input_of) {
-        reader.input_place(&input, node.span);
+
+    #[test]
+    fn a_stock_has_a_strength_and_a_portion() {
+        let litres = content(
+            "substance: hydrochloric acid, volume: 10.00 ± 0.02 mL (tolerance), concentration: 0.1000 ± 0.0002 mol/L (k=2), factor: 1.0023",
+        );
+        assert!(matches!(
+            litres.amount,
+            ContentAmount::Stock {
+                taken: Taken::Volume(_),
+                strength: Strength::Concentration(_)
+            }
+        ));
+        for item in [
+            "substance: phosphoric acid, volume: 5 mL, concentration: 85 % w/w, density: 1.685 g/mL",
+            "substance: phosphoric acid, volume: 5 mL, concentration: '85 % w/w, 1.685 g/mL'",
+        ] {
+            let ContentAmount::Stock {
+                strength: Strength::MassFraction { fraction, density },
+                ..
+            } = content(item).amount
+            else {
+                panic!("{item}")
+            };
+            assert!((fraction.value().base() - 0.85).abs() < 1e-15);
+            assert!((density.unwrap().value().base() - 1.685).abs() < 1e-15);
+        }
+        let weighed = content("substance: phosphoric acid, mass: 5 g, concentration: 85 % w/w");
+        assert!(matches!(
+            weighed.amount,
+            ContentAmount::Stock {
+                taken: Taken::Mass(_),
+                ..
+            }
+        ));
     }
-    mean
-}
 
-fn input_of(amount: &ContentAmount) -> Option<InputId> {
-    match amount {
-        ContentAmount::Mass(input) => Some(input.id.clone()),
-        ContentAmount::Amount(input) => Some(input.id.clone()),
-        ContentAmount::Concentration(input) => Some(input.id.clone()),
-        _ => None,
+    #[test]
+    fn replicates_give_mean_and_standard_deviation_of_the_mean() {
+        // 19.21, 19.22 and 19.26: mean 19.23, s = 0.0264575, over √3 0.0152753; by hand.
+        let content =
+            content("substance: citric acid monohydrate, replicates: [19.21 g, 19.22 g, 19.26 g]");
+        let ContentAmount::Mass(input) = content.amount else {
+            panic!()
+        };
+        assert!((input.value().base() - 19.23).abs() < 1e-12);
+        assert!((input.measured.standard_uncertainty() - 0.015_275_3).abs() < 5e-5);
+        assert_eq!(input.measured.degrees_of_freedom(), Some(2.0));
+        assert_eq!(input.replicates.len(), 3);
     }
-}
 
-fn mean<D: Dimension>(
-    first: &Input<D>,
-    readings: &[ContentAmount],
-    of: impl Fn(&ContentAmount) -> Option<Measured<D>>,
-) -> Option<Input<D>> {
-    let readings: Vec<Measured<D>> = readings.iter().map(of).collect::<Option<_>>()?;
-    Some(Input {
-        id: first.id.clone(),
-        measured: Measured::mean(&readings)?,
-        replicates: readings,
-    })
-}
-
-/// Purity or assay, moisture, titre.
-pub(super) fn corrections(
-    reader: &mut Reader<'_>,
-    keys: &mut Keys<'_>,
-    id: &InputId,
-) -> Corrections {
-    let purity = reader.amount::<MassFraction>(keys, "purity", id);
-    let assay = reader.amount::<MassFraction>(keys, "assay", id);
-    let water = reader.amount::<MassFraction>(keys, "water", id);
-    let factor = reader.amount::<Number>(keys, "factor", id);
-    let purity = match (purity, assay) {
-        (Some(_), Some(assay)) => {
-            let span = reader.place(&assay.id);
-            reader.error(
+    #[test]
+    fn faults_of_an_item_stand_where_they_are() {
+        for (item, rule, place, help) in [
+            ("substance: NaCl", Rule::AmountNeeded, "NaCl", "`mass`"),
+            ("mass: 1 g", Rule::MissingKey, "mass", "`substance: ...`"),
+            (
+                "substance: NaCl, mas: 1 g, mass: 2 g",
+                Rule::UnknownKey,
+                "mas",
+                "`mass`",
+            ),
+            (
+                "substance: NaCl, mass: 1 g, amount: 1 mol",
+                Rule::TooManyAmounts,
+                "NaCl",
+                "one of",
+            ),
+            (
+                "substance: HCl, volume: 1 mL",
+                Rule::AmountNeeded,
+                "1 mL",
+                "concentration",
+            ),
+            (
+                "substance: HCl, concentration: 37 % w/w",
+                Rule::AmountNeeded,
+                "37 % w/w",
+                "volume",
+            ),
+            (
+                "substance: HCl, volume: 1 mL, concentration: 37 % w/w",
+                Rule::DensityNeeded,
+                "37 % w/w",
+                "density",
+            ),
+            (
+                "substance: HCl, mass: 1 g, concentration: 1 mol/L",
+                Rule::DensityNeeded,
+                "1 mol/L",
+                "% w/w",
+            ),
+            (
+                "substance: HCl, volume: 1 mL, concentration: 137 % w/w",
+                Rule::OutOfRange,
+                "137 % w/w",
+                "110",
+            ),
+            (
+                "substance: NaCl, mass: 1 g, density: 2 g/mL",
                 Rule::ConflictingKeys,
-                span,
-                "`assay` and `purity` mean the same; state one",
-            );
-            None
+                "2 g/mL",
+                "",
+            ),
+            (
+                "substance: NaCl, mass: 1 g, factor: 1.01",
+                Rule::ConflictingKeys,
+                "1.01",
+                "",
+            ),
+            (
+                "substance: NaCl, concentration: 1 mol/L, purity: 99 %",
+                Rule::ConflictingKeys,
+                "99 %",
+                "",
+            ),
+            (
+                "substance: NaCl, mass: 1 g, purity: 99 %, assay: 98 %",
+                Rule::ConflictingKeys,
+                "98 %",
+                "",
+            ),
+            (
+                "substance: NaCl, mass: 1 g, water: 100 %",
+                Rule::OutOfRange,
+                "100 %",
+                "below",
+            ),
+            (
+                "substance: HCl, concentration: 1 mol/L, factor: -1",
+                Rule::OutOfRange,
+                "-1",
+                "above 0",
+            ),
+            (
+                "substance: NaCl, mass: 1 g, replicates: [1 g, 2 g]",
+                Rule::ConflictingKeys,
+                "[1 g, 2 g]",
+                "",
+            ),
+            (
+                "substance: NaCl, replicates: [1 g]",
+                Rule::EmptyList,
+                "[1 g]",
+                "[19.21 g, 19.22 g]",
+            ),
+            (
+                "substance: NaCl, replicates: [1 g, 2 mg]",
+                Rule::EmptyList,
+                "[1 g, 2 mg]",
+                "",
+            ),
+        ] {
+            let keys = format!("volume: 1 L\ncontents:\n  - {{{item}}}\n");
+            one_fault("speciation", &keys, rule, place, help);
         }
-        (purity, assay) => purity.or(assay),
-    };
-    let mut within = |input: Option<&InputId>, inside: bool, expected: &str| {
-        if let Some(id) = input.filter(|_| !inside) {
-            let span = reader.place(id);
-            reader.diagnostics.push(
-                Diagnostic::error(Rule::OutOfRange, span, "not possible here").expecting(expected),
-            );
-        }
-    };
-    within(
-        purity.as_ref().map(|input| &input.id),
-        purity
-            .as_ref()
-            .is_none_or(|input| input.value().base() > 0.0),
-        "a purity above 0 %",
-    );
-    within(
-        water.as_ref().map(|input| &input.id),
-        water
-            .as_ref()
-            .is_none_or(|input| input.value().base() < 1.0),
-        "a water content below 100 %",
-    );
-    within(
-        factor.as_ref().map(|input| &input.id),
-        factor
-            .as_ref()
-            .is_none_or(|input| input.value().base() > 0.0),
-        "a titre above 0, such as 1.0023",
-    );
-    Corrections {
-        purity,
-        water,
-        factor,
-    }
-}
-
-/// Lot and expiry, as written.
-pub(super) fn trace(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Trace {
-    let mut text = |key| {
-        keys.text(key, &mut reader.diagnostics)
-            .map(|scalar| scalar.text().to_owned())
-    };
-    Trace {
-        lot: text("lot"),
-        expiry: text("expiry"),
     }
 }

@@ -129,3 +129,70 @@ fn dilution(reader: &mut Reader<'_>, mapping: &Mapping) -> Option<DilutionSeries
         steps: steps.unwrap_or(1),
     })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{one_fault, problem};
+    use crate::problem::Problem;
+
+    const PORTIONS: &str = "portions:\n  - volume: 100.0 mL\n    contents:\n      acetic acid: 0.100 mol/L\n  - volume: 400.0 mL\n    solution: naoh-01\n  - volume: 500.0 mL\n    contents: water\n";
+
+    #[test]
+    fn the_example_of_the_language_is_read() {
+        let keys = format!("{PORTIONS}dilution: {{take: 10 mL, made up to: 100 mL, steps: 3}}\n");
+        let Problem::Mixing(task) = problem("mixing", &keys) else {
+            panic!()
+        };
+        assert_eq!(task.mixture.made_up, MadeUp::SumOfPortions);
+        assert!(matches!(
+            task.mixture.ingredients.as_slice(),
+            [
+                Ingredient::Solution(_),
+                Ingredient::Solution(_),
+                Ingredient::Water(_)
+            ]
+        ));
+        assert_eq!(task.series.unwrap().steps, 3);
+    }
+
+    #[test]
+    fn faults_of_a_mixture() {
+        for (keys, rule, place, help) in [
+            (String::new(), Rule::MissingKey, "label", "`portions: ...`"),
+            ("portions: []\n".to_owned(), Rule::EmptyList, "[]", ""),
+            (
+                format!("{PORTIONS}made up to: 0.9 L\n"),
+                Rule::OutOfRange,
+                "0.9 L",
+                "",
+            ),
+            (
+                format!("{PORTIONS}dilution: {{take: 200 mL, made up to: 100 mL}}\n"),
+                Rule::OutOfRange,
+                "dilution",
+                "",
+            ),
+            (
+                format!("{PORTIONS}dilution: {{take: 2 mL, made up to: 100 mL, steps: 1.5}}\n"),
+                Rule::OutOfRange,
+                "1.5",
+                "whole number",
+            ),
+            (
+                "portions: [{contents: water}]\n".to_owned(),
+                Rule::MissingKey,
+                "contents",
+                "`volume: ...`",
+            ),
+            (
+                "portions: [{volume: 0 mL, contents: water}]\n".to_owned(),
+                Rule::OutOfRange,
+                "0 mL",
+                "more than nothing",
+            ),
+        ] {
+            one_fault("mixing", &keys, rule, place, help);
+        }
+    }
+}

@@ -6,9 +6,11 @@
 
 mod adjustment;
 mod amount;
+mod certificate;
 mod charge;
 mod choice;
 mod conditions;
+mod constant_entry;
 mod constants;
 mod contents;
 mod context;
@@ -19,16 +21,21 @@ mod item;
 mod keys;
 mod mixing;
 mod outline;
+mod pk_value;
 mod preparation;
 mod range;
 mod reader;
 mod readings;
 mod remarks;
+mod replicates;
 mod source;
 mod spread;
 mod stock;
 mod titration;
+#[cfg(test)]
+mod trial;
 
+pub use constants::constants;
 pub use context::{Attachments, Context, SolutionError, Solutions};
 pub use defaults::Defaults;
 pub use keys::{KEYS, KeyEntry};

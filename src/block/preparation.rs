@@ -182,14 +182,14 @@ fn ionic_strength(
     })
 }
 
-/// What was really taken, in the order of the sources and then the salt; `-` for nothing recorded.
+/// What was really taken, in the order of the sources and then the salt; `none` where nothing was recorded.
 fn taken(reader: &mut Reader<'_>, node: &Node, sources: usize) -> Vec<Weighed> {
     let mut weighed = Vec::new();
     for (index, item) in node.items().iter().enumerate() {
         let Some(scalar) = item.as_text(&mut reader.diagnostics) else {
             continue;
         };
-        if scalar.text() == "-" {
+        if scalar.text() == "none" {
             continue;
         }
         if index >= sources {
@@ -229,4 +229,156 @@ pub(super) fn liquid(
         });
     }
     contents::composition(reader, keys, id)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{faults, one_fault, problem};
+    use crate::problem::{Problem, SourceKind};
+
+    const TARGET: &str = "target: {pH: 7.20, volume: 2.000 L, concentration: 50.0 mmol/L}\n";
+
+    #[test]
+    fn the_example_of_the_language_is_read() {
+        let Problem::Preparation(task) = problem(
+            "preparation",
+            "target:\n  pH: 7.20\n  volume: 2.000 L\n  concentration: 50.0 mmol/L\n  ionic strength: 0.150 mol/L with sodium chloride\n  temperature: 4 °C\nfrom:\n  - sodium dihydrogen phosphate monohydrate\n  - substance: disodium hydrogen phosphate\n    purity: 99.2 %\nbalance: 0.1 mg\nweighed: [6.90 g, none, 5.0 g]\n",
+        ) else {
+            panic!()
+        };
+        assert_eq!(
+            task.target.ionic_strength.unwrap().salt.name,
+            "sodium chloride"
+        );
+        let BufferChoice::From(sources) = task.buffer else {
+            panic!()
+        };
+        assert!(
+            sources
+                .iter()
+                .all(|source| matches!(source.kind, SourceKind::Solid { .. }))
+        );
+        let places: Vec<usize> = task.weighed.iter().map(|weighed| weighed.source).collect();
+        assert_eq!(places, [0, 2]);
+    }
+
+    #[test]
+    fn stocks_may_state_their_density_beside_the_strength() {
+        let keys = format!(
+            "{TARGET}from:\n  - {{substance: phosphoric acid, concentration: '85 % w/w, 1.685 g/mL'}}\n  - solution: naoh-01\n"
+        );
+        let Problem::Preparation(task) = problem("preparation", &keys) else {
+            panic!()
+        };
+        let BufferChoice::From(sources) = task.buffer else {
+            panic!()
+        };
+        assert!(matches!(sources[0].kind, SourceKind::Stock { .. }));
+        assert!(matches!(sources[1].kind, SourceKind::Solution(_)));
+    }
+
+    #[test]
+    fn faults_of_a_preparation() {
+        let from = "from: [tris, hydrochloric acid]\n";
+        for (keys, rule, place, help) in [
+            (from.to_owned(), Rule::MissingKey, "label", "`target: ...`"),
+            (
+                TARGET.to_owned(),
+                Rule::MissingKey,
+                "label",
+                "buffer: suggest",
+            ),
+            (
+                format!("{TARGET}buffer: tris\n"),
+                Rule::UnknownChoice,
+                "tris",
+                "`suggest`",
+            ),
+            (
+                format!("{TARGET}{from}buffer: suggest\n"),
+                Rule::ConflictingKeys,
+                "suggest",
+                "",
+            ),
+            (
+                format!("{TARGET}{from}avoid: [tris]\n"),
+                Rule::ConflictingKeys,
+                "avoid",
+                "",
+            ),
+            (
+                format!("{TARGET}buffer: suggest\nweighed: [1 g]\n"),
+                Rule::ConflictingKeys,
+                "[1 g]",
+                "",
+            ),
+            (
+                format!("{TARGET}from: [tris]\n"),
+                Rule::BadPair,
+                "[tris]",
+                "two forms",
+            ),
+            (
+                format!("{TARGET}{from}weighed: [1 g, 1 mL, 1 g]\n"),
+                Rule::OutOfRange,
+                "1 g",
+                "",
+            ),
+            (
+                format!("{TARGET}from: [tris, {{substance: HCl, concentration: 37 % w/w}}]\n"),
+                Rule::DensityNeeded,
+                "37 % w/w",
+                "density",
+            ),
+            (
+                format!("{from}target: {{pH: 20, volume: 1 L, concentration: 1 mol/L}}\n"),
+                Rule::OutOfRange,
+                "20",
+                "16",
+            ),
+            (
+                format!(
+                    "{from}target: {{pH: 8, volume: 1 L, concentration: 1 mol/L, temperature: 4 K}}\n"
+                ),
+                Rule::BadTemperature,
+                "4 K",
+                "`4 °C`",
+            ),
+            (
+                format!(
+                    "{from}target: {{pH: 8, volume: 1 L, concentration: 1 mol/L, ionic strength: 1 mol/L}}\n"
+                ),
+                Rule::BadTarget,
+                "1 mol/L",
+                "with sodium chloride",
+            ),
+            (
+                format!(
+                    "{from}target: {{pH: 8, volume: 1 L, concentration: 1 mol/L, ionic strength: 1 mol/L with tris}}\n"
+                ),
+                Rule::BadTarget,
+                "tris",
+                "sodium chloride",
+            ),
+        ] {
+            one_fault("preparation", &keys, rule, place, help);
+        }
+    }
+
+    #[test]
+    fn everything_that_a_target_lacks_is_told_at_once() {
+        let found = faults("preparation", "target: {ph: 7}\nfrom: [tris, HCl]\n");
+        let rules: Vec<Rule> = found.iter().map(|fault| fault.0).collect();
+        assert_eq!(
+            rules,
+            [
+                Rule::MissingKey,
+                Rule::MissingKey,
+                Rule::MissingKey,
+                Rule::UnknownKey
+            ]
+        );
+        assert!(found[3].2.contains("`pH`"));
+    }
 }

@@ -212,3 +212,82 @@ pub(super) fn count(
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::block::trial::{one_fault, statement};
+    use crate::problem::ShortcutName;
+    use crate::quantity::Dimension;
+    use crate::text::Rule;
+
+    #[test]
+    fn the_examples_of_the_language_are_read() {
+        let statement = statement(
+            "label: a\ntask: speciation\ncontents: water\nmeasured:\n  pH: 7.18 ± 0.02 (k=2)\n  temperature: 24.6 °C\n  calibration: [phthalate 4.005, phosphate 6.865, slope 99.1 %]\n  limit: 7.20 ± 0.05\nhand value:\n  pH: -0.15\n  by: x neglected\n  limit: 0.02\nreport: {pH: 3 decimals, amounts: 1 figure}\nmethod: SOP-114 rev 3\nequipment: [balance B-04, pipette P-2]\n",
+        );
+        let measured = statement.measured.unwrap();
+        assert!((measured.ph.measured.standard_uncertainty() - 0.01).abs() < 1e-15);
+        assert_eq!(measured.calibration.len(), 3);
+        assert!((measured.limit.unwrap().half_width.base() - 0.05).abs() < 1e-15);
+        let hand = statement.hand_value.unwrap();
+        assert_eq!(hand.by, ShortcutName::XNeglected);
+        assert!(hand.ph.value().base() < 0.0);
+        assert_eq!(statement.reporting.ph_decimals, 3);
+        assert_eq!(statement.reporting.significant_figures, 1);
+        assert_eq!(
+            statement.annotations.equipment,
+            ["balance B-04", "pipette P-2"]
+        );
+    }
+
+    #[test]
+    fn faults_of_remarks() {
+        for (keys, rule, place, help) in [
+            ("hand value: 2.15\n", Rule::NotAMapping, "2.15", ""),
+            (
+                "hand value: {pH: 2.15}\n",
+                Rule::MissingKey,
+                "hand value",
+                "`by: ...`",
+            ),
+            (
+                "hand value: {pH: 2.15, by: x neglectd}\n",
+                Rule::BadHandValue,
+                "x neglectd",
+                "`x neglected`",
+            ),
+            (
+                "hand value: {pH: 2.15, by: ampholyte, limit: -0.1}\n",
+                Rule::OutOfRange,
+                "-0.1",
+                "",
+            ),
+            (
+                "measured: {pH: 7.1 ± 0.02}\n",
+                Rule::BadUncertainty,
+                "± 0.02",
+                "(k=2)",
+            ),
+            (
+                "measured: {pH: 7.1, limit: 7.3 to 7.1}\n",
+                Rule::BadMeasured,
+                "7.3 to 7.1",
+                "",
+            ),
+            (
+                "report: {pH: 2, colour: 3}\n",
+                Rule::UnknownKey,
+                "colour",
+                "`pH`",
+            ),
+        ] {
+            one_fault(
+                "speciation",
+                &format!("contents: water\n{keys}"),
+                rule,
+                place,
+                help,
+            );
+        }
+    }
+}

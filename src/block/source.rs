@@ -2,7 +2,7 @@
 
 use crate::block::outline::reference;
 use crate::block::reader::Reader;
-use crate::block::{contents, item, stock};
+use crate::block::{certificate, contents, stock};
 use crate::problem::{
     Corrections, Input, InputId, SolutionPortion, Source, SourceKind, Strength, Trace,
 };
@@ -58,11 +58,11 @@ fn keyed(reader: &mut Reader<'_>, keys: &mut Keys<'_>, id: &InputId) -> Option<S
     let id = form
         .as_ref()
         .map_or_else(|| id.clone(), |form| id.renamed(&form.name));
-    let corrections = item::corrections(reader, keys, &id);
-    let trace = item::trace(reader, keys);
+    let corrections = certificate::corrections(reader, keys, &id);
+    let trace = certificate::trace(reader, keys);
     let density = keys.text("density", &mut reader.diagnostics);
     let concentration = keys.text("concentration", &mut reader.diagnostics);
-    item::idle_corrections(reader, &corrections, concentration.is_none());
+    certificate::idle_corrections(reader, &corrections, concentration.is_none());
     let kind = if let Some(scalar) = concentration {
         let strength = stock::strength(reader, form.as_deref(), scalar, density, &id)?;
         if matches!(&strength, Strength::MassFraction { density: None, .. }) {

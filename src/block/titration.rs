@@ -194,3 +194,142 @@ fn calibration(reader: &mut Reader<'_>, mapping: &Mapping) -> Option<Signal> {
         slope_percent: slope_percent?,
     })
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{faults, one_fault, problem};
+    use crate::problem::Problem;
+
+    const SAMPLE: &str = "sample: {volume: 25.00 mL, contents: {phosphoric acid: 0.0320 mol/L}}\n";
+    const TITRANT: &str = "titrant: {contents: {sodium hydroxide: 0.1000 mol/L}}\n";
+
+    fn keys(more: &str) -> String {
+        format!("{SAMPLE}{TITRANT}to: 20.00 mL\n{more}")
+    }
+
+    #[test]
+    fn the_example_of_the_language_is_read() {
+        let more = "points: 200\nreadings: run.csv\nfit: [phosphoric acid, titrant, pKa 1 of phosphoric acid, carbonate in titrant]\n";
+        let Problem::Titration(task) = problem("titration", &keys(more)) else {
+            panic!()
+        };
+        let readings = task.readings.unwrap();
+        assert_eq!(readings.points.len(), 6);
+        assert_eq!(
+            readings.fit,
+            [
+                FitParameter::SampleConcentration("phosphoric acid".to_owned()),
+                FitParameter::TitrantConcentration("sodium hydroxide".to_owned()),
+                FitParameter::Pk {
+                    ligand: "phosphoric acid".to_owned(),
+                    step: 1
+                },
+                FitParameter::CarbonateInTitrant,
+            ]
+        );
+    }
+
+    #[test]
+    fn millivolts_need_the_electrode() {
+        let more = "readings: run-mv.csv\ncalibration: {mV at pH 7: 2.1, slope: 98.9 %}\n";
+        let Problem::Titration(task) = problem("titration", &keys(more)) else {
+            panic!()
+        };
+        assert_eq!(
+            task.readings.unwrap().signal,
+            Signal::Millivolt {
+                at_ph_7: 2.1,
+                slope_percent: 98.9
+            }
+        );
+    }
+
+    #[test]
+    fn faults_of_a_titration() {
+        for (keys, rule, place, help) in [
+            (
+                format!("{TITRANT}to: 1 mL\n"),
+                Rule::MissingKey,
+                "label",
+                "`sample: ...`",
+            ),
+            (
+                format!("{SAMPLE}to: 1 mL\n"),
+                Rule::MissingKey,
+                "label",
+                "`titrant: ...`",
+            ),
+            (
+                format!("{SAMPLE}{TITRANT}"),
+                Rule::MissingKey,
+                "label",
+                "`to: ...`",
+            ),
+            (
+                format!("{SAMPLE}{TITRANT}to: 0 mL\n"),
+                Rule::OutOfRange,
+                "0 mL",
+                "more than nothing",
+            ),
+            (
+                format!("{SAMPLE}titrant: {{contents: water}}\nto: 1 mL\n"),
+                Rule::BadTitration,
+                "titrant",
+                "",
+            ),
+            (
+                format!("{TITRANT}to: 1 mL\nsample: {{contents: {{acetic acid: 1 mol/L}}}}\n"),
+                Rule::VolumeNeeded,
+                "sample",
+                "",
+            ),
+            (keys("points: 1\n"), Rule::OutOfRange, "1", "from 2 to"),
+            (
+                keys("readings: no.csv\n"),
+                Rule::MissingAttachment,
+                "no.csv",
+                "",
+            ),
+            (
+                keys("readings: run-mv.csv\n"),
+                Rule::BadAttachment,
+                "run-mv.csv",
+                "calibration",
+            ),
+            (
+                keys("fit: [titrant]\n"),
+                Rule::ConflictingKeys,
+                "fit",
+                "readings",
+            ),
+            (
+                keys("readings: run.csv\nfit: [citric acid]\n"),
+                Rule::BadFit,
+                "citric acid",
+                "a substance of",
+            ),
+            (
+                keys("readings: run.csv\nfit: [pKa 4 of phosphoric acid]\n"),
+                Rule::BadFit,
+                "pKa 4 of phosphoric acid",
+                "",
+            ),
+            (
+                keys("readings: run.csv\nfit: [titrant, NaOH]\n"),
+                Rule::BadFit,
+                "NaOH",
+                "",
+            ),
+        ] {
+            one_fault("titration", &keys, rule, place, help);
+        }
+    }
+
+    #[test]
+    fn every_wrong_line_of_the_readings_is_told() {
+        let found = faults("titration", &keys("readings: broken.csv\n"));
+        assert_eq!(found.len(), 2);
+        assert!(found.iter().all(|fault| fault.0 == Rule::BadAttachment));
+    }
+}
