@@ -1,7 +1,8 @@
 //! The values that blocks and the notebook's settings choose by the same words: activity model, air, uncertainty, digits, rounding.
 
-use crate::block::amount::{Accepted, Piece, Written};
+use crate::block::amount::{Accepted, Written};
 use crate::block::figure;
+use crate::block::piece::Piece;
 use crate::block::range::{self, Ranged};
 use crate::problem::{ActivityChoice, Air, Input, InputId, UncertaintyMode};
 use crate::quantity::{Dimension, Number, Pressure, RoundingRule, Unit};

@@ -1,18 +1,16 @@
 //! What a liquid is made of, in the short and the long form.
 
-use crate::block::outline::reference;
+use crate::block::origin::{portion, substance};
 use crate::block::reader::Reader;
-use crate::block::{SolutionError, amount, charge, item};
+use crate::block::{amount, charge, content_amount, item};
 use crate::problem::{
-    Composition, Content, ContentAmount, Corrections, Ingredient, Input, InputId, MadeUp,
-    SolutionPortion, Trace,
+    Composition, Content, ContentAmount, Corrections, Ingredient, Input, InputId, MadeUp, Trace,
 };
 use crate::quantity::{Dimension, Unit, Volume};
 use crate::substance::Form;
 use crate::text::{Diagnostic, Rule, Span};
 use crate::yaml::{Keys, Mapping, Node, Scalar, Value};
 use std::collections::BTreeMap;
-use std::sync::Arc;
 
 /// Most ingredients of one liquid.
 const MOST_INGREDIENTS: usize = 64;
@@ -172,7 +170,7 @@ fn short_amount(
             "a mass fraction needs the density, and how much was taken",
             "use the long form: `- substance: ...`, `volume: ...`, `concentration: 37 % w/w`, `density: 1.18 g/mL`",
         ),
-        _ => return item::any_amount(reader, form, scalar, item),
+        _ => return content_amount::any_amount(reader, form, scalar, item),
     };
     reader
         .diagnostics
@@ -204,75 +202,10 @@ fn long(reader: &mut Reader<'_>, mapping: &Mapping, id: &InputId) -> Option<Ingr
     found
 }
 
-/// A portion of another block's solution: `solution: stocks/2026-10.md#naoh-01` with its volume.
-pub(super) fn portion(
-    reader: &mut Reader<'_>,
-    keys: &mut Keys<'_>,
-    scalar: &Scalar,
-    id: &InputId,
-) -> Option<SolutionPortion> {
-    let volume = reader.required::<Volume>(keys, "volume", id);
-    let composition = solution(reader, scalar);
-    Some(SolutionPortion {
-        volume: volume?,
-        reference: Some(reference(scalar.text())),
-        composition: composition?,
-    })
-}
-
-/// The composition of another block's solution, its inputs under that block's name.
-pub(super) fn solution(reader: &mut Reader<'_>, scalar: &Scalar) -> Option<Arc<Composition>> {
-    let wanted = reference(scalar.text());
-    reader.references.push(wanted.clone());
-    match reader.context.solutions.solution(&wanted) {
-        Ok(composition) => Some(Arc::new(composition.seen_from(&wanted))),
-        Err(error) => {
-            let rule = match error {
-                SolutionError::Unknown { .. } | SolutionError::Page { .. } => Rule::UnknownSolution,
-                SolutionError::Circular => Rule::CircularSolution,
-                SolutionError::Faulty => Rule::SolutionNotUsable,
-            };
-            let mut diagnostic = Diagnostic::error(
-                rule,
-                scalar.span(),
-                format!("`{}` cannot be used: {error}", scalar.text()),
-            );
-            if let SolutionError::Unknown { labels } = &error {
-                diagnostic =
-                    diagnostic.did_you_mean(&wanted.label, labels.iter().map(String::as_str));
-            }
-            reader.diagnostics.push(diagnostic);
-            None
-        }
-    }
-}
-
-/// The substance that a name means.
-pub(super) fn substance<'s>(
-    reader: &mut Reader<'_>,
-    name: impl Into<amount::Piece<'s>>,
-) -> Option<Arc<Form>> {
-    let name = name.into();
-    match reader.catalogue.find(name.text()) {
-        Ok(form) => Some(Arc::clone(form)),
-        Err(error) => {
-            let diagnostic = Diagnostic::error(
-                Rule::UnknownSubstance,
-                name.span(),
-                format!("`{}` is not in the library", name.text()),
-            )
-            .expecting("a name, formula or CAS number of the library, or own `constants`")
-            .did_you_mean(name.text(), error.names.iter().map(String::as_str));
-            reader.diagnostics.push(diagnostic);
-            None
-        }
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::block::trial::{faults, one_fault, problem, statement};
+    use crate::block::trial::{faults, one_fault, problem};
     use crate::problem::Problem;
 
     fn ingredients(keys: &str) -> Vec<Ingredient> {
@@ -413,35 +346,5 @@ mod tests {
             "sodium chloride",
             "add the amounts",
         );
-    }
-
-    #[test]
-    fn solutions_of_other_blocks_flow_in_under_their_names() {
-        let statement = statement(
-            "label: a\ntask: speciation\nvolume: 1 L\ncontents:\n  - solution: stocks/2026-10.md#naoh-01\n    volume: 10.00 mL\n",
-        );
-        let Problem::Speciation(task) = statement.problem else {
-            panic!()
-        };
-        let [Ingredient::Solution(portion)] = task.composition.ingredients.as_slice() else {
-            panic!()
-        };
-        let [Ingredient::Substance(content)] = portion.composition.ingredients.as_slice() else {
-            panic!()
-        };
-        assert_eq!(
-            content.id.as_str(),
-            "stocks/2026-10.md#naoh-01 : contents / 1 sodium hydroxide"
-        );
-        let keys =
-            |name| format!("volume: 1 L\ncontents:\n  - solution: {name}\n    volume: 1 mL\n");
-        for (name, rule) in [
-            ("naoh-1", Rule::UnknownSolution),
-            ("round", Rule::CircularSolution),
-            ("wrong", Rule::SolutionNotUsable),
-        ] {
-            let found = faults("speciation", &keys(name));
-            assert_eq!((found[0].0, found[0].1.as_str()), (rule, name));
-        }
     }
 }

@@ -1,6 +1,6 @@
 //! Where a number ends in a text, and what is wrong with it.
 
-use crate::block::amount::Piece;
+use crate::block::piece::Piece;
 use crate::quantity::{Decimal, DecimalError};
 use crate::text::{Diagnostic, Rule, Span};
 use crate::yaml::Scalar;

@@ -1,7 +1,7 @@
 //! `mixing`: portions poured together, and a serial dilution.
 
 use crate::block::reader::Reader;
-use crate::block::{contents, remarks};
+use crate::block::{contents, origin, remarks};
 use crate::problem::{
     Composition, DilutionSeries, Ingredient, Input, InputId, MadeUp, Mixing, SolutionPortion,
 };
@@ -61,7 +61,7 @@ pub(super) fn read(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<Mixin
 fn portion(reader: &mut Reader<'_>, mapping: &Mapping, id: &InputId) -> Option<Ingredient> {
     let mut keys = mapping.keys();
     let found = if let Some(scalar) = keys.text("solution", &mut reader.diagnostics) {
-        contents::portion(reader, &mut keys, scalar, id).map(Ingredient::Solution)
+        origin::portion(reader, &mut keys, scalar, id).map(Ingredient::Solution)
     } else {
         own(reader, &mut keys, id)
     };

@@ -1,8 +1,8 @@
 //! `preparation`: a buffer to be made.
 
-use crate::block::amount::Piece;
+use crate::block::piece::Piece;
 use crate::block::reader::Reader;
-use crate::block::{amount, contents, remarks, source};
+use crate::block::{amount, contents, origin, remarks, source};
 use crate::problem::{
     BufferChoice, Composition, Ingredient, InputId, IonicStrengthTarget, MadeUp, Preparation,
     PreparationTarget, Readability, Source, Taken, Weighed,
@@ -163,7 +163,7 @@ fn ionic_strength(
         return None;
     };
     let value = reader.input(id.within("ionic strength"), value);
-    let form = contents::substance(reader, salt)?;
+    let form = origin::substance(reader, salt)?;
     let inert = form.ligands().next().is_none() && form.protons() == 0 && form.charge == 0;
     if !inert || form.formula.is_none() {
         reader.diagnostics.push(
@@ -222,7 +222,7 @@ pub(super) fn liquid(
     id: &InputId,
 ) -> Option<Composition> {
     if let Some(scalar) = keys.text("solution", &mut reader.diagnostics) {
-        let portion = contents::portion(reader, keys, scalar, id)?;
+        let portion = origin::portion(reader, keys, scalar, id)?;
         return Some(Composition {
             made_up: MadeUp::To(portion.volume.clone()),
             ingredients: vec![Ingredient::Solution(portion)],

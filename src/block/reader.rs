@@ -1,12 +1,9 @@
 //! The block as a whole: its keys, in whatever order they stand, to a statement.
 
-use crate::block::amount::Piece;
+use crate::block::piece::Piece;
 use crate::block::range::Ranged;
-use crate::block::{
-    Context, Defaults, KEYS, adjustment, amount, conditions, constants, contents, mixing,
-    preparation, range, remarks, titration,
-};
-use crate::problem::{Input, InputId, Label, Problem, SolutionReference, Speciation, Statement};
+use crate::block::{Context, Defaults, amount, conditions, constants, label, range, remarks, task};
+use crate::problem::{Input, InputId, Label, SolutionReference, Statement};
 use crate::quantity::Measured;
 use crate::substance::Catalogue;
 use crate::text::{Diagnostic, Rule, Span};
@@ -60,7 +57,7 @@ pub fn read(content: &str, context: &Context<'_>) -> Reading {
     let mut statement = None;
     if let Some(mapping) = mapping {
         let mut keys = mapping.keys();
-        label = reader.label(&mut keys);
+        label = label::read(&mut reader, &mut keys);
         statement = reader.statement(&mut keys, label.as_ref().map(|(label, _)| label.clone()));
         keys.finish(&mut reader.diagnostics);
     }
@@ -163,33 +160,6 @@ impl Reader<'_> {
             .push(Diagnostic::error(rule, span, message));
     }
 
-    fn label(&mut self, keys: &mut Keys<'_>) -> Option<(Label, Span)> {
-        let Some(node) = keys.take("label") else {
-            if !keys.whole().is_partial() {
-                self.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::MissingLabel,
-                        keys.whole().heading(),
-                        "the block has no label",
-                    )
-                    .expecting("`label: a-name`, in lower-case letters, digits and hyphens"),
-                );
-            }
-            return None;
-        };
-        let scalar = node.as_text(&mut self.diagnostics)?;
-        match Label::new(scalar.text()) {
-            Ok(label) => Some((label, scalar.span())),
-            Err(error) => {
-                self.diagnostics.push(
-                    Diagnostic::error(Rule::BadLabel, scalar.span(), error.to_string())
-                        .helped(format!("write `label: {}`", suggested_label(scalar.text()))),
-                );
-                None
-            }
-        }
-    }
-
     fn statement(&mut self, keys: &mut Keys<'_>, label: Option<Label>) -> Option<Statement> {
         if let Some(node) = keys.take("constants") {
             constants::read(self, node);
@@ -201,7 +171,7 @@ impl Reader<'_> {
         let annotations = remarks::annotations(self, keys);
         let hand_value = remarks::hand_value(self, keys);
         let measured = remarks::measured(self, keys);
-        let problem = self.problem(keys);
+        let problem = task::read(self, keys);
         Some(Statement {
             label: label?,
             conditions: conditions?,
@@ -212,86 +182,13 @@ impl Reader<'_> {
             annotations,
         })
     }
-
-    fn problem(&mut self, keys: &mut Keys<'_>) -> Option<Problem> {
-        let Some(node) = keys.take("task") else {
-            if !keys.whole().is_partial() {
-                self.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::MissingKey,
-                        keys.whole().heading(),
-                        "the key `task` is missing",
-                    )
-                    .expecting(format!("one of {}", Problem::TASKS.join(", "))),
-                );
-            }
-            skip_task_keys(keys);
-            return None;
-        };
-        let scalar = node.as_text(&mut self.diagnostics)?;
-        match scalar.text() {
-            "speciation" => contents::composition(self, keys, &InputId::new("contents"))
-                .map(|composition| Problem::Speciation(Speciation { composition })),
-            "preparation" => {
-                preparation::read(self, keys).map(|task| Problem::Preparation(Box::new(task)))
-            }
-            "adjustment" => {
-                adjustment::read(self, keys).map(|task| Problem::Adjustment(Box::new(task)))
-            }
-            "mixing" => mixing::read(self, keys).map(Problem::Mixing),
-            "titration" => {
-                titration::read(self, keys).map(|task| Problem::Titration(Box::new(task)))
-            }
-            other => {
-                self.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::UnknownTask,
-                        scalar.span(),
-                        format!("`{other}` is no task"),
-                    )
-                    .expecting(format!("one of {}", Problem::TASKS.join(", ")))
-                    .did_you_mean(other, Problem::TASKS),
-                );
-                skip_task_keys(keys);
-                None
-            }
-        }
-    }
-}
-
-/// Without a task nobody can say which of its keys belong; none is reported as unknown.
-fn skip_task_keys(keys: &mut Keys<'_>) {
-    for entry in KEYS.iter().filter(|entry| !entry.tasks.is_empty()) {
-        keys.take(entry.key);
-    }
-}
-
-/// A label that would be accepted, made of what was written.
-fn suggested_label(text: &str) -> String {
-    let mut label = String::new();
-    for c in text.chars().flat_map(char::to_lowercase) {
-        if c.is_ascii_lowercase() || c.is_ascii_digit() {
-            label.push(c);
-        } else if !label.is_empty() && !label.ends_with('-') {
-            label.push('-');
-        }
-        if label.len() >= Label::LONGEST {
-            break;
-        }
-    }
-    let label = label.trim_end_matches('-');
-    if label.is_empty() {
-        "a-name".to_owned()
-    } else {
-        label.to_owned()
-    }
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
     use crate::block::trial::{faults, one_fault, reading, statement};
-    use crate::problem::{ActivityChoice, Air, Ingredient, Origin, UncertaintyMode};
+    use crate::problem::{ActivityChoice, Air, Ingredient, Origin, Problem, UncertaintyMode};
 
     const WATER: &str = "contents: water\n";
 

@@ -1,6 +1,6 @@
 //! Replicates: the mean, with the standard deviation of the mean.
 
-use crate::block::item::any_amount;
+use crate::block::content_amount::any_amount;
 use crate::block::reader::Reader;
 use crate::problem::{ContentAmount, Input, InputId};
 use crate::quantity::{AmountConcentration, Dimension, Measured};

@@ -2,7 +2,7 @@
 
 use crate::block::outline::reference;
 use crate::block::reader::Reader;
-use crate::block::{certificate, contents, stock};
+use crate::block::{certificate, origin, stock};
 use crate::problem::{
     Corrections, Input, InputId, SolutionPortion, Source, SourceKind, Strength, Trace,
 };
@@ -15,7 +15,7 @@ use crate::yaml::{Keys, Node, Value};
 pub(super) fn read(reader: &mut Reader<'_>, node: &Node, id: &InputId) -> Option<Source> {
     match &node.value {
         Value::Text(scalar) => {
-            let form = contents::substance(reader, scalar)?;
+            let form = origin::substance(reader, scalar)?;
             solid(reader, &form, scalar.span())?;
             Some(Source {
                 id: id.renamed(&form.name),
@@ -41,7 +41,7 @@ pub(super) fn read(reader: &mut Reader<'_>, node: &Node, id: &InputId) -> Option
 
 fn keyed(reader: &mut Reader<'_>, keys: &mut Keys<'_>, id: &InputId) -> Option<Source> {
     if let Some(scalar) = keys.text("solution", &mut reader.diagnostics) {
-        let composition = contents::solution(reader, scalar)?;
+        let composition = origin::solution(reader, scalar)?;
         let volume = Measured::<Volume>::new(Decimal::whole(1), Unit::Litre)?;
         return Some(Source {
             id: id.renamed(scalar.text()),
@@ -54,7 +54,7 @@ fn keyed(reader: &mut Reader<'_>, keys: &mut Keys<'_>, id: &InputId) -> Option<S
         });
     }
     let name = keys.required_text("substance", &mut reader.diagnostics);
-    let form = name.and_then(|name| contents::substance(reader, name));
+    let form = name.and_then(|name| origin::substance(reader, name));
     let id = form
         .as_ref()
         .map_or_else(|| id.clone(), |form| id.renamed(&form.name));

@@ -1,7 +1,8 @@
 //! What stands after the sign ±, and the words in brackets that say how to take it.
 
-use crate::block::amount::{Accepted, Piece, trimmed};
+use crate::block::amount::Accepted;
 use crate::block::figure;
+use crate::block::piece::{Piece, trimmed};
 use crate::quantity::{Decimal, Spread, Uncertainty, Unit};
 use crate::text::{Diagnostic, Rule, Span};
 

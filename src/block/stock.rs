@@ -1,7 +1,8 @@
 //! A stock: its strength, and a measured portion of it.
 
-use crate::block::amount::{Accepted, Piece, Written, unit_of};
-use crate::block::item::weighable;
+use crate::block::amount::{Accepted, Written, unit_of};
+use crate::block::content_amount::weighable;
+use crate::block::piece::Piece;
 use crate::block::reader::Reader;
 use crate::problem::{ContentAmount, Input, InputId, Strength, Taken};
 use crate::quantity::{AmountConcentration, Density, Dimension, MassFraction, Unit};

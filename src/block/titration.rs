@@ -2,7 +2,7 @@
 
 use crate::block::preparation::liquid;
 use crate::block::reader::Reader;
-use crate::block::{contents, figure, fit, readings, remarks};
+use crate::block::{contents, figure, fit, origin, readings, remarks};
 use crate::problem::{Composition, FitParameter, InputId, MadeUp, Readings, Signal, Titration};
 use crate::text::{Diagnostic, Rule};
 use crate::yaml::{Keys, Mapping, Scalar};
@@ -57,7 +57,7 @@ fn titrant(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<Composition> 
         .as_mapping(&mut reader.diagnostics)?;
     let mut inner = mapping.keys();
     let found = match inner.text("solution", &mut reader.diagnostics) {
-        Some(scalar) => contents::solution(reader, scalar).map(|found| (*found).clone()),
+        Some(scalar) => origin::solution(reader, scalar).map(|found| (*found).clone()),
         None => contents::composition(reader, &mut inner, &InputId::new("titrant")),
     };
     inner.finish(&mut reader.diagnostics);

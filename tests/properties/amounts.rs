@@ -1,4 +1,9 @@
 //! What is printed of an amount reads back as the same amount, and no text of a block brings the reader down.
+#![expect(
+    clippy::unwrap_used,
+    clippy::expect_used,
+    reason = "the library is embedded, and litres are a unit of volume"
+)]
 
 use ionfolio::block::{Attachments, Context, Defaults, Reading, SolutionError, Solutions, read};
 use ionfolio::problem::{Composition, MadeUp, Problem, SolutionReference};
