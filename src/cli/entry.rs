@@ -19,7 +19,7 @@ pub(super) fn run(arguments: &EntryArguments, terminal: &mut Terminal) -> ExitSt
     match new_page(page, template) {
         Ok(()) => {
             terminal.say(&format!(
-                "{}: written from {template}; fill the places in capitals",
+                "{}: written from {template}; fill the places between « and »",
                 page.display()
             ));
             ExitStatus::AllWell

@@ -116,7 +116,7 @@ fn defaults(notebook: &Notebook) -> Result<Defaults, DeskError> {
         None => Defaults::program(),
     };
     if let Some(rule) = &notebook.rounding
-        && !defaults.set_rounding(rule)
+        && !defaults.set_rounding_rule(rule)
     {
         return Err(DeskError::Content {
             path: notebook.root.join(crate::notebook::SETTINGS_FILE),
@@ -152,7 +152,7 @@ fn own_constants(embedded: &Catalogue, file: &Path) -> Result<Catalogue, DeskErr
         ))
     })?;
     let mut diagnostics = Vec::new();
-    let stored = block::read_constants(&text, &mut diagnostics);
+    let stored = block::constants(&text, &mut diagnostics).unwrap_or_default();
     if let Some(fault) = diagnostics.iter().find(|fault| fault.is_error()) {
         let place = LineIndex::new(&text).line_column(fault.span().start());
         return Err(failed(format!(

@@ -4,15 +4,20 @@ use crate::notebook::{ReplaceError, create};
 use std::path::Path;
 
 /// The templates that come with the program: name, what it is for, text.
-pub const TEMPLATES: [(&str, &str, &str); 6] = [
+pub const TEMPLATES: [(&str, &str, &str); 11] = [
     (
         "blank",
         "an empty page with one block",
         include_str!("../../entry_templates/blank.md"),
     ),
     (
+        "speciation",
+        "the state of one solution",
+        include_str!("../../entry_templates/speciation.md"),
+    ),
+    (
         "solution-preparation",
-        "a solution made up from weighed substances",
+        "a solution made up from weighed substances and stocks",
         include_str!("../../entry_templates/solution-preparation.md"),
     ),
     (
@@ -22,18 +27,38 @@ pub const TEMPLATES: [(&str, &str, &str); 6] = [
     ),
     (
         "mobile-phase",
-        "buffer for a column, aqueous part of a mobile phase",
+        "buffer for a column, before any organic solvent",
         include_str!("../../entry_templates/mobile-phase.md"),
     ),
     (
         "standard-titration",
-        "titration of a standard: before, and at the equivalence point",
+        "titration of a weighed standard, with readings",
         include_str!("../../entry_templates/standard-titration.md"),
     ),
     (
         "calculation-review",
-        "a calculation reviewed",
+        "a calculation worked by hand, reviewed",
         include_str!("../../entry_templates/calculation-review.md"),
+    ),
+    (
+        "preparation",
+        "a buffer from two forms, with its weighings",
+        include_str!("../../entry_templates/preparation.md"),
+    ),
+    (
+        "adjustment",
+        "a solution moved to a pH",
+        include_str!("../../entry_templates/adjustment.md"),
+    ),
+    (
+        "mixing",
+        "portions poured together, and a serial dilution",
+        include_str!("../../entry_templates/mixing.md"),
+    ),
+    (
+        "titration",
+        "a titration curve before it is run",
+        include_str!("../../entry_templates/titration.md"),
     ),
 ];
 

@@ -3,7 +3,7 @@
 //! The register is written and synced before the page is replaced. A run that was stopped between the two is completed by the next one: the act
 //! that the register holds is put into the page, and none is made anew.
 
-use crate::notebook::{Lock, LockError, ReplaceError, SETTINGS_FILE, create, read_page, replace};
+use crate::notebook::{Lock, LockError, SETTINGS_FILE, read_page, replace};
 use crate::page::{Edit, PAGE_LIMIT, Page, Written};
 use crate::procedure::compute::{ComputeError, write_plots};
 use crate::procedure::countersign::unescaped;
@@ -13,12 +13,11 @@ use crate::procedure::records::{Records, RecordsError};
 use crate::procedure::surroundings::Surroundings;
 use crate::procedure::{Desk, SignerError, key_of};
 use crate::record::{
-    self, Digest, Draft, KeyFile, Label, Named, NotebookPath, Register, ResultName, SignerName,
-    Signing, Standing, Statement, Supersession, TextLine, ValueFault,
+    self, Digest, Draft, Label, Named, NotebookPath, ResultName, SignerName, Statement,
+    Supersession, TextLine, ValueFault,
 };
 use crate::text::Diagnostic;
 use std::collections::BTreeMap;
-use std::fs;
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 

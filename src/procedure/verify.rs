@@ -380,7 +380,7 @@ impl Inspection<'_> {
             return failed("the answer carries no constants");
         };
         let mut diagnostics = Vec::new();
-        let stored = block::read_constants(&constants, &mut diagnostics);
+        let stored = block::constants(&constants, &mut diagnostics).unwrap_or_default();
         let Ok(catalogue) = Catalogue::default().overlaid(&stored) else {
             return failed("the constants of the answer cannot be read");
         };
