@@ -26,6 +26,8 @@ pub(super) struct Setting {
     pub(super) carbon_dioxide: Option<f64>,
     /// The user's own pKw at zero ionic strength, at the temperature of the block.
     pub(super) own_pkw: Option<f64>,
+    /// The acid family of dissolved carbon dioxide as the block's constants have it; the built-in one where there is none.
+    pub(super) carbonate: Option<Arc<Ligand>>,
 }
 
 impl Setting {
@@ -40,6 +42,7 @@ impl Setting {
                 .pkw
                 .as_ref()
                 .map(|constant| super::dissociation::at_temperature(constant, temperature).0),
+            carbonate: conditions.carbonate.clone(),
         }
     }
 
@@ -160,7 +163,7 @@ impl Assembly {
             draft.put(&entry.component, Some(entry.concentration));
         }
         if let Some(pressure) = setting.carbon_dioxide {
-            draft.hold_carbon_dioxide(pressure)?;
+            draft.hold_carbon_dioxide(pressure, setting.carbonate.as_ref())?;
         }
         let polyborates = polyborate::add(&mut draft.builder, &draft.parts, &draft.pks, &water);
         let Draft {
@@ -428,11 +431,15 @@ impl Draft {
     }
 
     /// Holds CO₂(aq) at the activity that a pressure in atm gives.
-    fn hold_carbon_dioxide(&mut self, pressure: f64) -> Result<(), Unsolvable> {
+    fn hold_carbon_dioxide(
+        &mut self,
+        pressure: f64,
+        own: Option<&Arc<Ligand>>,
+    ) -> Result<(), Unsolvable> {
         let is_carbonic = |part: &Part| part.component.name() == CARBONIC_ACID;
         if !self.parts.iter().any(is_carbonic) {
-            let library = Catalogue::embedded()?;
-            if let Some(ligand) = library.ligand(CARBONIC_ACID) {
+            let built_in = Catalogue::embedded()?.ligand(CARBONIC_ACID);
+            if let Some(ligand) = own.or(built_in) {
                 let component = Component::Ligand(Arc::clone(ligand));
                 self.put(&component, None);
             }
