@@ -174,11 +174,11 @@ mod tests {
 
     #[test]
     fn every_fault_is_told_with_its_line() {
-        let faults = read(b"volume_mL,pH\n0,2\n1,x\n3,3\n2,3\n4,44\n").unwrap_err();
+        let faults = read(b"volume_mL,pH\n0,2\n1,q\n3,3\n2,3\n4,44\n").unwrap_err();
         assert_eq!(
             faults,
             [
-                "line 3: column 2: 'x' is not part of a number",
+                "line 3: column 2: 'q' is not part of a number",
                 "line 5: the volume is smaller than in the line before",
                 "line 6: column 2: 44 is not possible",
             ]

@@ -17,8 +17,20 @@ struct Figure {
     reason: String,
     /// Largest root mean square of found less stated.
     rms: Option<String>,
+    /// A known miss of the root mean square: the figure reached, and why.
+    miss: Option<KnownMiss>,
     /// Smallest share inside a distance: distance, share.
     within: Vec<(String, String)>,
+}
+
+/// A root mean square that is known to miss.
+#[derive(Clone, Debug, Deserialize)]
+#[serde(deny_unknown_fields)]
+struct KnownMiss {
+    /// What is reached instead.
+    rms: String,
+    /// Why.
+    reason: String,
 }
 
 /// One test for each figure of `figures.yaml`.
@@ -54,13 +66,7 @@ impl Figure {
         }
         let count = off.len() as f64;
         let rms = (off.iter().map(|d| d * d).sum::<f64>() / count).sqrt();
-        if self.rms.as_deref().is_some_and(|limit| rms > number(limit)) {
-            return Err(format!(
-                "{}: rms {rms:.4} over {count} cases; {}",
-                self.set, self.reason
-            )
-            .into());
-        }
+        self.judge_rms(rms, count)?;
         for (distance, share) in &self.within {
             let inside = off.iter().filter(|d| **d <= number(distance)).count() as f64 / count;
             if inside < number(share) {
@@ -72,5 +78,29 @@ impl Figure {
             }
         }
         Ok(())
+    }
+
+    /// A known miss must miss, and by what was written down.
+    fn judge_rms(&self, rms: f64, count: f64) -> Result<(), Failed> {
+        let Some(limit) = self.rms.as_deref().map(number) else {
+            return Ok(());
+        };
+        let line = format!(
+            "{}: rms {rms:.4} over {count} cases, {limit} wanted; {}",
+            self.set, self.reason
+        );
+        match &self.miss {
+            None if rms <= limit => Ok(()),
+            None => Err(line.into()),
+            Some(_) if rms <= limit => {
+                Err(format!("{line}; listed as a known miss but reached: strike it").into())
+            }
+            Some(miss) if (rms - number(&miss.rms)).abs() <= 0.000_051 => Ok(()),
+            Some(miss) => Err(format!(
+                "{line}; a known miss, written down as {} ({})",
+                miss.rms, miss.reason
+            )
+            .into()),
+        }
     }
 }
