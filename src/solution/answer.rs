@@ -257,6 +257,8 @@ pub struct TitrationOutcome {
     pub equivalence_points: Vec<EquivalencePoint>,
     /// Indicators that change in a steep part.
     pub indicators: Vec<IndicatorEndPoint>,
+    /// Indicators that were asked for and are in no table.
+    pub unknown_indicators: Vec<String>,
     /// The fit to readings.
     pub fit: Option<Fit>,
 }

@@ -10,17 +10,23 @@ mod assembly;
 mod assumption;
 mod budget;
 mod buffer_suggestion;
+mod burette;
 mod carbon_dioxide;
 mod caution;
 mod comparison;
 mod composition;
 mod conclusion;
 mod dissociation;
+mod end_point;
+mod equivalence;
+mod fit;
 mod hand;
+mod indicator;
 mod mixing;
 mod model_choice;
 mod polyborate;
 mod preparation;
+mod readings;
 mod recipe;
 mod search;
 mod shortcut;
@@ -30,6 +36,7 @@ mod speciation;
 #[cfg(test)]
 mod specimen;
 mod tape;
+mod titration;
 mod unsolvable;
 
 pub use budget::Contribution;
@@ -50,8 +57,6 @@ pub fn solve(statement: &Statement) -> Result<Answer, Unsolvable> {
         Problem::Mixing(task) => mixing::mixture(&bench, task),
         Problem::Preparation(task) => preparation::prepared(&bench, task),
         Problem::Adjustment(task) => adjustment::adjusted(&bench, task),
-        Problem::Titration(_) => Err(Unsolvable::Fit {
-            reason: String::new(),
-        }),
+        Problem::Titration(task) => titration::titrated(&bench, task),
     }
 }
