@@ -5,7 +5,9 @@
 //! seed.
 
 mod adjustment;
+mod adjustment_start;
 pub mod answer;
+mod approach;
 mod assembly;
 mod assumption;
 mod budget;
@@ -17,17 +19,22 @@ mod comparison;
 mod composition;
 mod conclusion;
 mod dissociation;
+mod draft;
 mod end_point;
 mod equivalence;
 mod fit;
+mod fit_parameter;
 mod hand;
+mod hand_verdict;
 mod indicator;
 mod mixing;
 mod model_choice;
+mod outcome;
 mod polyborate;
 mod preparation;
 mod readings;
 mod recipe;
+mod residual;
 mod search;
 mod shortcut;
 mod simulation;
