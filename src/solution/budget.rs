@@ -241,11 +241,11 @@ fn model_lines(
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::problem::ContentAmount;
+    use crate::problem::{Air, ContentAmount};
     use crate::problem::{Composition, MadeUp};
     use crate::quantity::Unit;
     use crate::solution::solve;
-    use crate::solution::specimen::{content, input, speciation, uncertain};
+    use crate::solution::specimen::{content, input, speciation, stated, uncertain};
 
     fn line(value: f64, standard: f64, sensitivity: f64, dof: Option<f64>) -> Contribution {
         Contribution {
@@ -375,5 +375,60 @@ mod tests {
             (ph("3.9003", "1.002") - ph("3.9003", "0.998")) / 0.004,
         );
         assert!((by_volume / of("volume") - 1.0).abs() < 1e-6, "{by_volume}");
+    }
+
+    #[test]
+    fn sensitivities_hold_with_air_and_polyborates() {
+        // Central differences of 0.1 % of the value; their own error is of the order of 1e-6 relative here.
+        let cases: [(&[(&str, &str)], Air); 2] = [
+            (
+                &[("sodium hydrogen carbonate", "0.0200")],
+                Air::CarbonDioxide(input("air", "0.05", Unit::Atmosphere)),
+            ),
+            (
+                &[("borax", "0.0500"), ("boric acid", "0.1000")],
+                Air::Closed,
+            ),
+        ];
+        for (contents, air) in cases {
+            let answer = |scale: f64| {
+                let figures: Vec<String> = contents
+                    .iter()
+                    .map(|(_, figure)| (figure.parse::<f64>().unwrap() * scale).to_string())
+                    .collect();
+                let ingredients = contents
+                    .iter()
+                    .zip(&figures)
+                    .map(|((name, _), figure)| {
+                        let amount = uncertain(name, figure, "0.0001", Unit::MolePerLitre);
+                        content(name, ContentAmount::Concentration(amount))
+                    })
+                    .collect();
+                let mut statement = speciation(
+                    Composition {
+                        made_up: MadeUp::Unstated,
+                        ingredients,
+                    },
+                    "25",
+                );
+                statement.conditions.air = stated(air.clone());
+                solve(&statement).unwrap()
+            };
+            let by_scale: f64 = answer(1.0)
+                .budget
+                .unwrap()
+                .lines
+                .iter()
+                .filter_map(|line| {
+                    let (_, figure) = contents.iter().find(|(name, _)| line.what == *name)?;
+                    Some(line.sensitivity * figure.parse::<f64>().unwrap())
+                })
+                .sum();
+            let difference = (answer(1.001).state.ph - answer(0.999).state.ph) / 0.002;
+            assert!(
+                (by_scale / difference - 1.0).abs() < 1e-4,
+                "{by_scale} {difference}"
+            );
+        }
     }
 }
