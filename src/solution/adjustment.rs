@@ -8,7 +8,9 @@ use crate::problem::{
 use crate::quantity::{Decimal, Dimension, Measured, Number, RoundingRule, Unit};
 use crate::solution::Unsolvable;
 use crate::solution::adjustment_start::{Start, ph_with};
-use crate::solution::answer::{Addition, AdjustmentOutcome, Answer, Outcome, Overshoot};
+use crate::solution::answer::{
+    Addition, AdjustmentOutcome, Answer, Assumption, Outcome, Overshoot,
+};
 use crate::solution::assembly::Assembly;
 use crate::solution::conclusion::{Bench, Finding};
 use crate::solution::search::{bracket, root};
@@ -145,7 +147,29 @@ impl<'a> Moving<'a> {
             assembly: self.bench.assemble(&liquid)?,
             outcome: Outcome::Adjustment(Box::new(outcome)),
             liquid,
+            assumptions: self.assumptions(drop),
         })
+    }
+
+    fn assumptions(&self, drop: f64) -> Vec<Assumption> {
+        let assumed = |statement: String| Assumption {
+            statement,
+            alternative: None,
+            cost: None,
+        };
+        let mut list = Vec::new();
+        if self.task.drop.is_none() && self.measure == Measure::Pipetted {
+            list.push(assumed(format!(
+                "A drop is {drop} mL (assumed: common practice)."
+            )));
+        }
+        if self.task.measured_ph.is_some() {
+            list.push(assumed(
+                "The measured pH at the start is taken as true; a strong acid or base beside what was stated makes up for the difference."
+                    .to_owned(),
+            ));
+        }
+        list
     }
 
     /// Change of pH per unit (g, mL) of the addition.

@@ -1,9 +1,10 @@
 //! What a buffer is made from, and how its target pH is approached.
 
 use crate::equilibrium::Total;
-use crate::problem::{Composition, MadeUp, Preparation, Source};
-use crate::quantity::{Decimal, Dimension};
+use crate::problem::{Composition, Input, MadeUp, Preparation, Readability, Source};
+use crate::quantity::{Decimal, Dimension, Volume};
 use crate::solution::Unsolvable;
+use crate::solution::answer::Assumption;
 use crate::solution::assembly::Assembly;
 use crate::solution::source::{Measure, ingredient, taken_id};
 use crate::solution::tape::VariableIndex;
@@ -228,4 +229,53 @@ fn families(brought: &[Vec<(String, f64)>]) -> Vec<String> {
         .chain(second)
         .filter(|name| !STRONG.contains(&name.as_str()))
         .collect()
+}
+
+/// Refuses stocks that alone take more than the final volume.
+///
+/// # Errors
+/// [`Unsolvable::Sources`].
+pub(super) fn volumes_fit(
+    items: &[Item],
+    taken: &[f64],
+    volume: &Input<Volume>,
+) -> Result<(), Unsolvable> {
+    let pipetted: f64 = items
+        .iter()
+        .zip(taken)
+        .filter(|(item, _)| item.measure == Measure::Pipetted)
+        .map(|(_, litres)| litres)
+        .sum();
+    if pipetted <= volume.value().base() {
+        return Ok(());
+    }
+    Err(Unsolvable::Sources {
+        reason: format!(
+            "the stocks alone take {pipetted:.3} L, more than the final volume of {}; use stronger stocks or a lower concentration",
+            volume.measured
+        ),
+        input: volume.id.clone(),
+    })
+}
+
+/// What is assumed of instruments that were not told.
+pub(super) fn readings(items: &[Item], readability: &Readability) -> Vec<Assumption> {
+    let has = |measure: Measure| items.iter().any(|item| item.measure == measure);
+    let assumed = |statement: &str| Assumption {
+        statement: statement.to_owned(),
+        alternative: None,
+        cost: None,
+    };
+    let mut list = Vec::new();
+    if readability.balance.is_none() && has(Measure::Weighed) {
+        list.push(assumed(
+            "The balance reads to 0.1 mg (assumed: common practice).",
+        ));
+    }
+    if readability.pipette.is_none() && has(Measure::Pipetted) {
+        list.push(assumed(
+            "Pipette or burette read to 0.01 mL (assumed: common practice).",
+        ));
+    }
+    list
 }

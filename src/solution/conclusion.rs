@@ -2,13 +2,13 @@
 
 use crate::problem::{Composition, Ingredient, InputId, Statement, UncertaintyMode};
 use crate::solution::Unsolvable;
-use crate::solution::answer::{Answer, ConstantsUsed, ModelFacts, Outcome};
+use crate::solution::answer::{Answer, Assumption, ConstantsUsed, ModelFacts, Outcome};
 use crate::solution::assembly::{Assembly, CARBONIC_ACID, Setting};
 use crate::solution::model_choice::{ChosenModel, choose, within_range};
 use crate::solution::recipe::{Recipe, Writer};
 use crate::solution::speciation::state;
 use crate::solution::{
-    assumption, budget, carbon_dioxide, caution, comparison, polyborate, shortcut, simulation,
+    assumption, carbon_dioxide, caution, comparison, ph_budget, polyborate, shortcut, simulation,
 };
 use crate::substance::Component;
 use std::sync::Arc;
@@ -27,6 +27,8 @@ pub(super) struct Finding {
     pub(super) assembly: Assembly,
     pub(super) outcome: Outcome,
     pub(super) liquid: Composition,
+    /// Assumptions of the task itself.
+    pub(super) assumptions: Vec<Assumption>,
 }
 
 impl<'a> Bench<'a> {
@@ -66,6 +68,7 @@ impl<'a> Bench<'a> {
             assembly,
             outcome,
             liquid,
+            assumptions,
         } = finding;
         let solved = assembly.solve(&assembly.stated())?;
         let state = state(&assembly, &solved);
@@ -78,12 +81,12 @@ impl<'a> Bench<'a> {
         let budget = match self.statement.conditions.uncertainty.value {
             UncertaintyMode::None => None,
             UncertaintyMode::Budget | UncertaintyMode::Simulation { .. } => {
-                Some(budget::of(self, &assembly, &solved, &surroundings))
+                Some(ph_budget::of(self, &assembly, &solved, &surroundings))
             }
         };
         let simulation = match self.statement.conditions.uncertainty.value {
             UncertaintyMode::Simulation { draws, seed } => {
-                let added = budget::added(self, &solved, &surroundings);
+                let added = ph_budget::added(self, &solved, &surroundings);
                 Some(simulation::simulate(
                     &assembly, &solved, &added, draws, seed,
                 )?)
@@ -91,6 +94,8 @@ impl<'a> Bench<'a> {
             UncertaintyMode::None | UncertaintyMode::Budget => None,
         };
         let (shortcuts, hand_value) = shortcut::tested(self, &assembly, &solved);
+        let mut all = assumption::list(self, &assembly, &surroundings, &liquid)?;
+        all.extend(assumptions);
         Ok(Answer {
             model: self.model_facts(&assembly),
             simulation,
@@ -99,7 +104,7 @@ impl<'a> Bench<'a> {
             comparison: comparison::of(self, &assembly, &solved, &surroundings),
             budget,
             constants: constants(&assembly),
-            assumptions: assumption::list(self, &assembly, &surroundings, &liquid)?,
+            assumptions: all,
             cautions: caution::list(self, &assembly, &state, &surroundings, &liquid),
             liquid,
             outcome,

@@ -30,6 +30,7 @@ mod indicator;
 mod mixing;
 mod model_choice;
 mod outcome;
+mod ph_budget;
 mod polyborate;
 mod preparation;
 mod readings;

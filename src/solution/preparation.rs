@@ -5,13 +5,15 @@ use crate::problem::{BufferChoice, Corrections, Preparation, Source, SourceKind,
 use crate::quantity::{Decimal, Dimension};
 use crate::solution::Unsolvable;
 use crate::solution::answer::{Addition, Answer, Outcome, PreparationOutcome, Suggestion};
-use crate::solution::approach::{Item, MOST_DISSOLVED, Way, composed, items};
+use crate::solution::approach::{
+    Item, MOST_DISSOLVED, Way, composed, items, readings, volumes_fit,
+};
 use crate::solution::assembly::Assembly;
 use crate::solution::assumption::ph_per_kelvin;
 use crate::solution::buffer_suggestion;
 use crate::solution::conclusion::{Bench, Finding};
 use crate::solution::search::{bracket, root};
-use crate::solution::source::{Measure, name, to_steps};
+use crate::solution::source::{name, to_steps};
 use std::sync::Arc;
 
 /// The answer to a preparation.
@@ -181,7 +183,7 @@ impl<'a> Making<'a> {
             .map(|(item, amount)| to_steps(amount / item.measure.base_per_unit(), item.step, rule))
             .collect();
         let rounded: Vec<f64> = self.in_base(&figures);
-        self.volumes_fit(&rounded)?;
+        volumes_fit(&self.items, &rounded, &self.task.target.volume)?;
         let sources: Vec<Source> = self.items.iter().map(|item| item.source.clone()).collect();
         let steps: Vec<Decimal> = self.items.iter().map(|item| item.step).collect();
         let as_rounded = composed(self.task, &sources, &figures, Some(&steps))?;
@@ -212,6 +214,7 @@ impl<'a> Making<'a> {
             assembly,
             outcome: Outcome::Preparation(Box::new(outcome)),
             liquid,
+            assumptions: readings(&self.items, &self.task.readability),
         })
     }
 
@@ -221,26 +224,6 @@ impl<'a> Making<'a> {
             .zip(figures)
             .map(|(item, figure)| figure.to_f64() * item.measure.base_per_unit())
             .collect()
-    }
-
-    fn volumes_fit(&self, taken: &[f64]) -> Result<(), Unsolvable> {
-        let pipetted: f64 = self
-            .items
-            .iter()
-            .zip(taken)
-            .filter(|(item, _)| item.measure == Measure::Pipetted)
-            .map(|(_, litres)| litres)
-            .sum();
-        if pipetted > self.volume {
-            return Err(Unsolvable::Sources {
-                reason: format!(
-                    "the stocks alone take {pipetted:.3} L, more than the final volume of {}; use stronger stocks or a lower concentration",
-                    self.task.target.volume.measured
-                ),
-                input: self.task.target.volume.id.clone(),
-            });
-        }
-        Ok(())
     }
 
     fn additions(

@@ -45,6 +45,7 @@ pub(super) fn titrated(bench: &Bench<'_>, task: &Titration) -> Result<Answer, Un
         assembly: sample,
         outcome: Outcome::Titration(Box::new(outcome)),
         liquid: task.sample.clone(),
+        assumptions: Vec::new(),
     })
 }
 
