@@ -25,6 +25,8 @@ pub(super) struct Setting {
     pub(super) model: ActivityModel,
     /// Partial pressure of CO₂ in atm that the solution is in equilibrium with; closed to air where there is none.
     pub(super) carbon_dioxide: Option<f64>,
+    /// The acid family of dissolved carbon dioxide, where the statement names it.
+    pub(super) carbonate: Option<Arc<Ligand>>,
     /// The user's own pKw at zero ionic strength, at the temperature of the block.
     pub(super) own_pkw: Option<f64>,
 }
@@ -37,6 +39,7 @@ impl Setting {
             temperature,
             model,
             carbon_dioxide: carbon_dioxide::pressure(&conditions.air.value),
+            carbonate: conditions.carbonate.clone(),
             own_pkw: conditions
                 .pkw
                 .as_ref()
@@ -154,7 +157,7 @@ impl Assembly {
             draft.put(&entry.component, Some(entry.concentration));
         }
         if let Some(pressure) = setting.carbon_dioxide {
-            draft.hold_carbon_dioxide(pressure)?;
+            draft.hold_carbon_dioxide(pressure, setting.carbonate.as_ref())?;
         }
         let polyborates = polyborate::add(&mut draft.builder, &draft.parts, &draft.pks, &water);
         let Draft {

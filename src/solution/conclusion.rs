@@ -8,7 +8,8 @@ use crate::solution::model_choice::{ChosenModel, choose, within_range};
 use crate::solution::recipe::{Recipe, Writer};
 use crate::solution::speciation::state;
 use crate::solution::{
-    assumption, carbon_dioxide, caution, comparison, ph_budget, polyborate, shortcut, simulation,
+    assumption, carbon_dioxide, caution, comparison, distribution, ph_budget, polyborate, shortcut,
+    simulation,
 };
 use crate::substance::Component;
 use std::sync::Arc;
@@ -103,7 +104,11 @@ impl<'a> Bench<'a> {
             hand_value,
             comparison: comparison::of(self, &assembly, &solved, &surroundings),
             budget,
-            constants: constants(&assembly),
+            distribution: distribution::over_ph(&assembly, &solved, &state),
+            constants: ConstantsUsed {
+                water: self.statement.conditions.pkw.clone(),
+                ..constants(&assembly)
+            },
             assumptions: all,
             cautions: caution::list(self, &assembly, &state, &surroundings, &liquid),
             liquid,

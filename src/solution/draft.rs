@@ -104,13 +104,19 @@ impl Draft {
     ///
     /// # Errors
     /// [`Unsolvable::Library`].
-    pub(super) fn hold_carbon_dioxide(&mut self, pressure: f64) -> Result<(), Unsolvable> {
+    pub(super) fn hold_carbon_dioxide(
+        &mut self,
+        pressure: f64,
+        stated: Option<&Arc<Ligand>>,
+    ) -> Result<(), Unsolvable> {
         let is_carbonic = |part: &Part| part.component.name() == CARBONIC_ACID;
         if !self.parts.iter().any(is_carbonic) {
-            let library = Catalogue::embedded()?;
-            if let Some(ligand) = library.ligand(CARBONIC_ACID) {
-                let component = Component::Ligand(Arc::clone(ligand));
-                self.put(&component, None);
+            let ligand = match stated {
+                Some(ligand) => Some(ligand),
+                None => Catalogue::embedded()?.ligand(CARBONIC_ACID),
+            };
+            if let Some(ligand) = ligand {
+                self.put(&Component::Ligand(Arc::clone(ligand)), None);
             }
         }
         let lg_activity =

@@ -19,6 +19,7 @@ mod comparison;
 mod composition;
 mod conclusion;
 mod dissociation;
+mod distribution;
 mod draft;
 mod end_point;
 mod equivalence;
