@@ -1,161 +1,149 @@
 //! The grammar of an amount: `0.0200 ± 0.0001 mol/L (k=2)`.
 //!
 //! ```text
-//! amount      = number [spread] [unit] [percent-spread] [ "(" words ")" ]
-//! spread      = ("±" | "+/-") number
-//! words       = ("k=" number | "standard" | "tolerance" | "rectangular") ["," "dof=" number]
+//! amount = number [unit] [ sign number [unit | "%"] "(" words ")" ]
+//! sign   = "±" | "+/-" | "+-"
+//! words  = kind ["," "dof=" number]
+//! kind   = "k=" number | "standard" | "tolerance" | "rectangular"
 //! ```
+//!
+//! The unit stands after the value, after the figure that follows the sign, or after both; `%` after that figure is a share of the value.
 
-use crate::quantity::{
-    Decimal, DecimalError, Dimension, Measured, Spread, Uncertainty, Unit, UnitError,
-};
+use crate::block::figure;
+use crate::block::piece::{Piece, trimmed};
+use crate::block::spread;
+use crate::quantity::{Decimal, Dimension, Measured, Uncertainty, Unit, UnitError};
 use crate::text::{Diagnostic, Rule, Span};
-use crate::yaml::Scalar;
 
-/// Reads an amount of one dimension; everything wrong with it is reported.
-pub(super) fn read<D: Dimension>(
-    scalar: &Scalar,
-    diagnostics: &mut Vec<Diagnostic>,
-) -> Option<Measured<D>> {
-    let parts = Parts::of(scalar, diagnostics)?;
-    let unit = parts.unit::<D>(scalar, diagnostics)?;
-    let Some(measured) = Measured::new(parts.number, unit) else {
-        diagnostics.push(wrong_unit::<D>(scalar.part(parts.unit_span), unit));
-        return None;
-    };
-    Some(match parts.uncertainty {
-        Some(uncertainty) => measured.with(uncertainty),
-        None => measured,
-    })
+/// What may stand at a place.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Accepted {
+    /// What it is called in a message, with its article.
+    pub(super) name: &'static str,
+    /// The units in which it may be stated.
+    pub(super) units: &'static [Unit],
 }
 
-/// Reads an amount that is a part of a longer value; faults are reported at the whole value.
-pub(super) fn read_text<D: Dimension>(
-    text: &str,
-    whole: &Scalar,
+impl Accepted {
+    /// What a dimension accepts; a plain number has no unit.
+    pub(super) fn of<D: Dimension>() -> Self {
+        let units = if D::UNITS.contains(&Unit::One) {
+            &[Unit::One]
+        } else {
+            D::UNITS
+        };
+        Self {
+            name: D::NAME,
+            units,
+        }
+    }
+
+    fn is_plain(self) -> bool {
+        self.units == [Unit::One]
+    }
+
+    fn symbols(self) -> impl Iterator<Item = &'static str> {
+        self.units.iter().map(|unit| unit.symbol())
+    }
+
+    /// `a volume in mL, L, µL`.
+    fn listed(self) -> String {
+        if self.is_plain() {
+            return self.name.to_owned();
+        }
+        format!(
+            "{} in {}",
+            self.name,
+            self.symbols().collect::<Vec<_>>().join(", ")
+        )
+    }
+}
+
+/// Reads an amount of one dimension; everything wrong with it is reported.
+pub(super) fn read<'s, D: Dimension>(
+    piece: impl Into<Piece<'s>>,
     diagnostics: &mut Vec<Diagnostic>,
 ) -> Option<Measured<D>> {
-    let mut inside = Vec::new();
-    let mut node = crate::yaml::read(
-        &format!("- {}", text.trim()),
-        crate::yaml::Limits::BLOCK,
-        &mut inside,
-    )?;
-    let measured = match &mut node.value {
-        crate::yaml::Value::List(items) => items
-            .first()?
-            .as_text(&mut inside)
-            .and_then(|scalar| read::<D>(scalar, &mut inside)),
-        _ => None,
-    };
-    for fault in inside {
-        let mut placed = Diagnostic::error(fault.rule(), whole.span(), fault.message());
-        if let Some(expected) = fault.expected() {
-            placed = placed.expecting(expected);
-        }
-        diagnostics.push(placed);
-    }
-    measured
+    Written::read(piece.into(), Accepted::of::<D>(), diagnostics)?.measured()
 }
 
 /// The unit of an amount, whatever its dimension; nothing is reported.
-pub(super) fn unit_of(scalar: &Scalar) -> Option<Unit> {
-    let mut unheard = Vec::new();
-    let parts = Parts::of(scalar, &mut unheard)?;
-    let unit = scalar
-        .text()
-        .get(parts.unit_span.start()..parts.unit_span.end())?;
-    Unit::parse(unit).ok()
+pub(super) fn unit_of<'s>(piece: impl Into<Piece<'s>>) -> Option<Unit> {
+    let piece = piece.into();
+    let parts = Parts::of(piece, &mut Vec::new())?;
+    Unit::parse(parts.unit.of(piece.text())?).ok()
 }
 
-/// Reads a plain number without unit or uncertainty.
-pub(super) fn number(scalar: &Scalar, diagnostics: &mut Vec<Diagnostic>) -> Option<Decimal> {
-    match Decimal::parse(scalar.text()) {
-        Ok(number) => Some(number),
-        Err(error) => {
-            diagnostics.push(bad_number(scalar.span(), scalar.text(), &error));
-            None
-        }
+/// An amount whose dimension its unit tells.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Written {
+    number: Decimal,
+    uncertainty: Option<Uncertainty>,
+    /// The unit, one of the accepted ones.
+    pub(super) unit: Unit,
+}
+
+impl Written {
+    /// Reads an amount in one of the accepted units.
+    pub(super) fn read(
+        piece: Piece<'_>,
+        accepted: Accepted,
+        diagnostics: &mut Vec<Diagnostic>,
+    ) -> Option<Self> {
+        let parts = Parts::of(piece, diagnostics)?;
+        let unit = unit(piece, parts.unit, accepted, diagnostics);
+        let uncertainty = match parts.spread {
+            Some(stated) => {
+                let found = stated.read(piece, parts.unit, accepted, diagnostics);
+                Some(found?)
+            }
+            None => None,
+        };
+        Some(Self {
+            number: parts.number,
+            uncertainty,
+            unit: unit?,
+        })
+    }
+
+    /// The amount in a dimension; `None` if the unit is of another.
+    pub(super) fn measured<D: Dimension>(self) -> Option<Measured<D>> {
+        let measured = Measured::new(self.number, self.unit)?;
+        Some(match self.uncertainty {
+            Some(uncertainty) => measured.with(uncertainty),
+            None => measured,
+        })
     }
 }
 
-/// An amount taken apart.
-struct Parts {
+/// An amount taken apart; spans are those of the piece's text.
+struct Parts<'s> {
     number: Decimal,
-    uncertainty: Option<Uncertainty>,
-    unit_span: Span,
+    /// The unit, empty where there is none.
+    unit: Span,
+    spread: Option<spread::Stated<'s>>,
 }
 
-impl Parts {
-    fn of(scalar: &Scalar, diagnostics: &mut Vec<Diagnostic>) -> Option<Self> {
-        let text = scalar.text();
-        let (body, words) = split_words(text);
-        let (before, after) = split_sign(body);
-        let number_end = number_length(before);
-        let number = match Decimal::parse(before.get(..number_end)?) {
-            Ok(number) => number,
-            Err(error) => {
-                let span = scalar.part(Span::new(0, number_end.max(1).min(text.len())));
-                diagnostics.push(bad_number(span, before.get(..number_end)?, &error));
-                return None;
+impl<'s> Parts<'s> {
+    fn of(piece: Piece<'s>, diagnostics: &mut Vec<Diagnostic>) -> Option<Self> {
+        let text = piece.text();
+        let (body, words) = spread::split_words(text);
+        let sign = spread::sign(body);
+        let value_end = sign.map_or(body.len(), Span::start);
+        let (number, length) = figure::leading(piece, 0, value_end, diagnostics)?;
+        let mut unit = trimmed(text, length, value_end);
+        let mut stated = None;
+        if let Some(sign) = sign {
+            let found = spread::Stated::of(piece, sign, body.len(), words, diagnostics)?;
+            if unit.is_empty() && !found.unit.is_empty() {
+                unit = found.unit;
             }
-        };
-        let mut unit_span = trimmed(text, number_end, before.len());
-        let mut uncertainty = None;
-        if let Some((start, after)) = after {
-            let length = number_length(after);
-            let stated = match Decimal::parse(after.get(..length)?) {
-                Ok(stated) => stated,
-                Err(error) => {
-                    let span = scalar.part(Span::new(start, start + after.len()));
-                    diagnostics.push(bad_number(span, after.get(..length)?, &error));
-                    return None;
-                }
-            };
-            let tail = trimmed(text, start + length, start + after.len());
-            let tail_text = tail.of(text).unwrap_or_default();
-            let relative = unit_span.start() < unit_span.end() && tail_text == "%";
-            if !relative {
-                if unit_span.start() < unit_span.end()
-                    && tail.start() < tail.end()
-                    && unit_span.of(text) != tail.of(text)
-                {
-                    diagnostics.push(
-                        Diagnostic::error(
-                            Rule::BadUncertainty,
-                            scalar.part(tail),
-                            "the uncertainty has another unit than the value",
-                        )
-                        .helped("write both in one unit: `0.0200 ± 0.0001 mol/L (k=2)`"),
-                    );
-                    return None;
-                }
-                if tail.start() < tail.end() {
-                    unit_span = tail;
-                }
-            }
-            let place = scalar.part(Span::new(start, start + after.len()));
-            let (spread, degrees_of_freedom) = spread(words, place, diagnostics)?;
-            if stated.is_negative() {
-                diagnostics.push(Diagnostic::error(
-                    Rule::BadUncertainty,
-                    place,
-                    "an uncertainty is not negative",
-                ));
-                return None;
-            }
-            uncertainty = Some(Uncertainty {
-                stated,
-                relative,
-                spread,
-                degrees_of_freedom,
-            });
+            stated = Some(found);
         } else if let Some(words) = words {
-            let span = scalar.part(Span::new(body.len(), text.len()));
             diagnostics.push(
                 Diagnostic::error(
                     Rule::BadUncertainty,
-                    span,
+                    piece.place(Span::new(body.len(), text.len())),
                     format!("`({words})` says how to take an uncertainty, but none is stated"),
                 )
                 .helped("write `value ± uncertainty unit (k=2)`"),
@@ -164,258 +152,235 @@ impl Parts {
         }
         Some(Self {
             number,
-            uncertainty,
-            unit_span,
+            unit,
+            spread: stated,
         })
     }
-
-    fn unit<D: Dimension>(
-        &self,
-        scalar: &Scalar,
-        diagnostics: &mut Vec<Diagnostic>,
-    ) -> Option<Unit> {
-        let text = self.unit_span.of(scalar.text()).unwrap_or_default();
-        if text.is_empty() {
-            if D::UNITS.contains(&Unit::One) {
-                return Some(Unit::One);
-            }
-            diagnostics.push(
-                Diagnostic::error(
-                    Rule::MissingUnit,
-                    scalar.span(),
-                    format!("{} without a unit; a unit is never guessed", D::NAME),
-                )
-                .expecting(listed::<D>()),
-            );
-            return None;
-        }
-        let span = scalar.part(self.unit_span);
-        match Unit::parse(text) {
-            Ok(unit) => Some(unit),
-            Err(UnitError::Refused { found, reason }) => {
-                diagnostics.push(
-                    Diagnostic::error(
-                        Rule::RefusedUnit,
-                        span,
-                        format!("`{found}` is not accepted: {reason}"),
-                    )
-                    .expecting(listed::<D>()),
-                );
-                None
-            }
-            Err(UnitError::Unknown { found }) => {
-                let symbols = D::UNITS.iter().map(|unit| unit.symbol());
-                diagnostics.push(
-                    Diagnostic::error(
-                        Rule::UnknownUnit,
-                        span,
-                        format!("`{found}` is not a unit that is known here"),
-                    )
-                    .expecting(listed::<D>())
-                    .did_you_mean(&found, symbols),
-                );
-                None
-            }
-        }
-    }
 }
 
-/// The words in brackets at the end, if they speak of an uncertainty.
-fn split_words(text: &str) -> (&str, Option<&str>) {
-    let whole = text.trim_end();
-    let inside = whole
-        .strip_suffix(')')
-        .and_then(|rest| rest.rsplit_once('('));
-    match inside {
-        Some((body, words)) if !words.contains('/') => (body, Some(words.trim())),
-        _ => (whole, None),
-    }
-}
-
-/// What stands before and after the sign ±, with the offset of the latter.
-fn split_sign(body: &str) -> (&str, Option<(usize, &str)>) {
-    for sign in ["±", "+/-", "+-"] {
-        if let Some((before, after)) = body.split_once(sign) {
-            let skipped = after.len() - after.trim_start().len();
-            return (
-                before,
-                Some((before.len() + sign.len() + skipped, after.trim_start())),
-            );
-        }
-    }
-    (body, None)
-}
-
-/// A span without the blanks at its ends.
-fn trimmed(text: &str, start: usize, end: usize) -> Span {
-    let part = text.get(start..end).unwrap_or_default();
-    let left = part.len() - part.trim_start().len();
-    let right = part.trim_end().len();
-    Span::new(start + left.min(right), start + right)
-}
-
-/// Bytes of the number at the front of a text, grouping and decimal commas included so that they can be reported.
-fn number_length(text: &str) -> usize {
-    let mut end = 0;
-    let mut rest = text.char_indices().peekable();
-    while let Some((at, c)) = rest.next() {
-        let next = text.get(at + c.len_utf8()..).unwrap_or_default();
-        let belongs = match c {
-            '0'..='9' | '.' | ',' | '\'' | '_' => true,
-            '+' | '-' | '−' | '–' => at == 0,
-            'e' | 'E' => {
-                end > 0
-                    && next
-                        .trim_start_matches(['+', '-', '−'])
-                        .starts_with(|d: char| d.is_ascii_digit())
-            }
-            c if c.is_whitespace() => {
-                next.starts_with(|d: char| d.is_ascii_digit()) || power_length(next).is_some()
-            }
-            '×' | 'x' | '·' | '*' => power_length(text.get(at..).unwrap_or_default()).is_some(),
-            _ => false,
-        };
-        if !belongs {
-            break;
-        }
-        end = at + c.len_utf8();
-        if let Some(length) = power_length(text.get(at..).unwrap_or_default()) {
-            return at + length;
-        }
-        if matches!(c, 'e' | 'E') {
-            while let Some((at, d)) =
-                rest.next_if(|(_, d)| d.is_ascii_digit() || matches!(d, '+' | '-' | '−'))
-            {
-                end = at + d.len_utf8();
-            }
-        }
-    }
-    end
-}
-
-/// Bytes of `× 10⁻³` at the front of a text.
-fn power_length(text: &str) -> Option<usize> {
-    let after_sign = text.strip_prefix(['×', 'x', '·', '*'])?;
-    let after_ten = after_sign.trim_start().strip_prefix("10")?;
-    let power = after_ten
-        .char_indices()
-        .find(|(_, c)| !(c.is_ascii_digit() || "^+-−⁺⁻⁰¹²³⁴⁵⁶⁷⁸⁹".contains(*c)))
-        .map_or(after_ten.len(), |(at, _)| at);
-    (power > 0).then_some(text.len() - after_ten.len() + power)
-}
-
-fn spread(
-    words: Option<&str>,
-    place: Span,
+/// The unit that stands at a place of the piece.
+fn unit(
+    piece: Piece<'_>,
+    part: Span,
+    accepted: Accepted,
     diagnostics: &mut Vec<Diagnostic>,
-) -> Option<(Spread, Option<Decimal>)> {
-    const HELP: &str = "add `(k=2)`, `(standard)`, `(tolerance)` or `(rectangular)` at the end";
-    let Some(words) = words else {
+) -> Option<Unit> {
+    let text = part.of(piece.text()).unwrap_or_default();
+    if text.is_empty() || (accepted.is_plain() && text == "%") {
+        if accepted.is_plain() {
+            return Some(Unit::One);
+        }
         diagnostics.push(
             Diagnostic::error(
-                Rule::BadUncertainty,
-                place,
-                "a bare ± does not say what kind of uncertainty it is",
+                Rule::MissingUnit,
+                piece.span(),
+                format!("{} without a unit; a unit is never guessed", accepted.name),
             )
-            .helped(HELP),
+            .expecting(accepted.listed()),
         );
         return None;
-    };
-    let mut spread = None;
-    let mut degrees_of_freedom = None;
-    for word in words.split(',').map(str::trim) {
-        let figure = |prefix: &str| {
-            let rest = word.strip_prefix(prefix)?.trim_start();
-            Decimal::parse(rest.strip_prefix('=')?)
-                .ok()
-                .filter(|figure| !figure.is_negative() && !figure.is_zero())
-        };
-        match word {
-            "standard" => spread = Some(Spread::Standard),
-            "tolerance" | "triangular" => spread = Some(Spread::Triangular),
-            "rectangular" => spread = Some(Spread::Rectangular),
-            _ => {
-                if let Some(k) = figure("k") {
-                    spread = Some(Spread::Expanded { k });
-                } else if let Some(figure) = figure("dof") {
-                    degrees_of_freedom = Some(figure);
-                } else {
-                    diagnostics.push(
-                        Diagnostic::error(
-                            Rule::BadUncertainty,
-                            place,
-                            format!("`{word}` is no kind of uncertainty"),
-                        )
-                        .helped(HELP),
-                    );
-                    return None;
-                }
-            }
-        }
     }
-    match spread {
-        Some(spread) => Some((spread, degrees_of_freedom)),
-        None => {
-            diagnostics.push(
-                Diagnostic::error(
-                    Rule::BadUncertainty,
-                    place,
-                    "the kind of uncertainty is missing",
-                )
-                .helped(HELP),
-            );
-            None
-        }
-    }
-}
-
-fn bad_number(span: Span, found: &str, error: &DecimalError) -> Diagnostic {
-    match error {
-        DecimalError::DecimalComma { corrected } => {
-            Diagnostic::error(Rule::DecimalComma, span, "a decimal comma")
-                .helped(format!("write `{}`", corrected.trim()))
-        }
-        DecimalError::Empty => Diagnostic::error(Rule::BadNumber, span, "a number is missing")
-            .expecting("a number, then a unit"),
-        other => Diagnostic::error(
-            Rule::BadNumber,
-            span,
-            format!("`{}` is no number: {other}", found.trim()),
-        ),
-    }
-}
-
-fn wrong_unit<D: Dimension>(span: Span, unit: Unit) -> Diagnostic {
-    if D::UNITS == [Unit::One, Unit::PartsPerMillion] {
-        return Diagnostic::error(
+    let span = piece.place(part);
+    let diagnostic = match Unit::parse(text) {
+        Ok(unit) if accepted.units.contains(&unit) => return Some(unit),
+        Ok(unit) if accepted.is_plain() => Diagnostic::error(
             Rule::UnexpectedUnit,
             span,
             format!("`{unit}` after a number that has no unit"),
+        ),
+        Ok(unit) => Diagnostic::error(
+            Rule::WrongUnit,
+            span,
+            format!("`{unit}` is not a unit of {}", spoken(accepted.name)),
+        ),
+        Err(UnitError::Refused { found, reason }) => Diagnostic::error(
+            Rule::RefusedUnit,
+            span,
+            format!("`{found}` is not accepted: {reason}"),
+        ),
+        Err(UnitError::Unknown { found }) => Diagnostic::error(
+            Rule::UnknownUnit,
+            span,
+            format!("`{found}` is not a unit that is known here"),
+        )
+        .did_you_mean(&found, accepted.symbols()),
+    };
+    diagnostics.push(diagnostic.expecting(accepted.listed()));
+    None
+}
+
+/// The name without its article.
+fn spoken(name: &'static str) -> &'static str {
+    name.strip_prefix("a ")
+        .or_else(|| name.strip_prefix("an "))
+        .unwrap_or(name)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::quantity::{
+        AmountConcentration, MassFraction, Number, Pressure, Temperature, Volume,
+    };
+    use crate::yaml::{Limits, read as tree};
+
+    fn with<D: Dimension>(value: &str) -> Result<Measured<D>, Vec<(Rule, String, Option<String>)>> {
+        let text = format!("a: {value}");
+        let mut found = Vec::new();
+        let root = tree(&text, Limits::BLOCK, &mut found).unwrap();
+        let mut keys = root.as_mapping(&mut found).unwrap().keys();
+        let scalar = keys.text("a", &mut found).unwrap();
+        let measured = read::<D>(scalar, &mut found);
+        measured.ok_or_else(|| {
+            found
+                .iter()
+                .map(|fault| {
+                    (
+                        fault.rule(),
+                        fault.span().of(&text).unwrap_or_default().to_owned(),
+                        fault.help().or(fault.expected()).map(str::to_owned),
+                    )
+                })
+                .collect()
+        })
+    }
+
+    #[test]
+    fn spellings_of_one_amount_are_one_amount() {
+        let plain = with::<Volume>("10.00 ± 0.02 mL (tolerance)").unwrap();
+        for text in [
+            "10.00 mL ± 0.02 mL (tolerance)",
+            "10.00 mL ± 0.02 (tolerance)",
+            "10.00 +/- 0.02 mL (tolerance)",
+            "10.00+/-0.02 ml (tolerance)",
+            "'10.00 ± 0.02 mL (tolerance)'",
+        ] {
+            assert_eq!(with::<Volume>(text), Ok(plain), "{text}");
+        }
+        assert_eq!(
+            with::<AmountConcentration>("5 µM").unwrap().value().base(),
+            5e-6
         );
+        for text in ["298.15 K", "25 °C", "25 ℃", "25°C", "25 degC"] {
+            assert_eq!(
+                with::<Temperature>(text).unwrap().value().base(),
+                298.15,
+                "{text}"
+            );
+        }
     }
-    Diagnostic::error(
-        Rule::WrongUnit,
-        span,
-        format!("`{unit}` is not a unit of {}", spoken::<D>()),
-    )
-    .expecting(listed::<D>())
-}
 
-fn spoken<D: Dimension>() -> &'static str {
-    D::NAME
-        .strip_prefix("a ")
-        .or_else(|| D::NAME.strip_prefix("an "))
-        .unwrap_or(D::NAME)
-}
-
-fn listed<D: Dimension>() -> String {
-    let symbols: Vec<&str> = D::UNITS
-        .iter()
-        .map(|unit| unit.symbol())
-        .filter(|symbol| !symbol.is_empty())
-        .collect();
-    if symbols.is_empty() {
-        return D::NAME.to_owned();
+    #[test]
+    fn a_share_of_the_value_is_told_from_points_of_a_percentage() {
+        let share = with::<AmountConcentration>("0.1 mol/L ± 0.5 % (k=2)").unwrap();
+        assert!((share.standard_uncertainty() - 0.000_25).abs() < 1e-18);
+        let points = with::<MassFraction>("99.5 ± 0.2 % (k=2)").unwrap();
+        assert!((points.standard_uncertainty() - 0.001).abs() < 1e-15);
+        let titre = with::<Number>("1.0023 ± 0.1 % (k=2, dof=9)").unwrap();
+        assert!((titre.standard_uncertainty() - 1.0023 * 0.0005).abs() < 1e-15);
+        assert_eq!(titre.degrees_of_freedom(), Some(9.0));
+        let unclear = with::<MassFraction>("37 % ± 1 % (k=2)").unwrap_err();
+        assert_eq!(unclear[0].0, Rule::BadUncertainty);
+        assert!(unclear[0].2.as_deref().unwrap().contains("37 ± 1 %"));
     }
-    format!("{} in {}", D::NAME, symbols.join(", "))
+
+    #[test]
+    fn faults_stand_where_they_were_typed_and_say_what_to_write() {
+        for (found, rule, place, help) in [
+            (
+                with::<Volume>("0,5 L").err(),
+                Rule::DecimalComma,
+                "0,5",
+                "write `0.5`",
+            ),
+            (
+                with::<Volume>("5").err(),
+                Rule::MissingUnit,
+                "5",
+                "a volume in mL, L, µL",
+            ),
+            (
+                with::<Volume>("5 g").err(),
+                Rule::WrongUnit,
+                "g",
+                "a volume in mL, L, µL",
+            ),
+            (
+                with::<Volume>("5 mll").err(),
+                Rule::UnknownUnit,
+                "mll",
+                "did you mean `mL`?",
+            ),
+            (
+                with::<Volume>("x mL").err(),
+                Rule::BadNumber,
+                "x mL",
+                "a number, then a unit",
+            ),
+            (
+                with::<Volume>("5 ± 0.1 mL").err(),
+                Rule::BadUncertainty,
+                "± 0.1 mL",
+                "(k=2)",
+            ),
+            (
+                with::<Volume>("5 ± 0,1 mL (k=2)").err(),
+                Rule::DecimalComma,
+                "0,1",
+                "write `0.1`",
+            ),
+            (
+                with::<Volume>("5 mL (k=2)").err(),
+                Rule::BadUncertainty,
+                "(k=2)",
+                "value ± uncertainty",
+            ),
+            (
+                with::<Volume>("5 mL ± 1 L (k=2)").err(),
+                Rule::BadUncertainty,
+                "L",
+                "one unit",
+            ),
+            (
+                with::<Volume>("5 ± 1 mL (sd)").err(),
+                Rule::BadUncertainty,
+                "sd",
+                "(standard)",
+            ),
+            (
+                with::<Temperature>("25 °C ± 1 % (k=2)").err(),
+                Rule::BadUncertainty,
+                "± 1 %",
+                "°C",
+            ),
+            (
+                with::<Number>("7 ppm").err(),
+                Rule::UnexpectedUnit,
+                "ppm",
+                "a number without unit",
+            ),
+            (
+                with::<Pressure>("1 psi").err(),
+                Rule::UnknownUnit,
+                "psi",
+                "a pressure in",
+            ),
+        ] {
+            let found = found.unwrap();
+            assert_eq!(
+                (found[0].0, found[0].1.as_str()),
+                (rule, place),
+                "{found:?}"
+            );
+            assert!(found[0].2.as_deref().unwrap().contains(help), "{found:?}");
+        }
+    }
+
+    #[test]
+    fn a_normality_is_refused_with_its_reason() {
+        for text in ["0.1 N", "0.1 eq/L", "100 meq/L"] {
+            let found = with::<AmountConcentration>(text).unwrap_err();
+            assert_eq!(found[0].0, Rule::RefusedUnit, "{text}");
+        }
+    }
 }

@@ -1,343 +1,265 @@
 //! Own constants: in the block, in a file beside it, or as an answer carries them.
 
-use crate::block::amount;
+use crate::block::constant_entry::{self, Entries};
 use crate::block::reader::Reader;
-use crate::substance::{
-    StoredConstants, StoredEquation, StoredForm, StoredIon, StoredPk, StoredSubstance,
-};
-use crate::text::{Diagnostic, Rule};
-use crate::yaml::{self, Keys, Limits, Mapping, Node, Value};
-use std::collections::BTreeMap;
+use crate::substance::{Catalogue, LibraryError, StoredConstants};
+use crate::text::{Diagnostic, LineIndex, Rule, Span};
+use crate::yaml::{self, Limits, Node, Scalar, Value};
 
 /// Reads `constants` and lays them over the library.
 pub(super) fn read(reader: &mut Reader<'_>, node: &Node) {
-    let before = reader.diagnostics.iter().filter(|d| d.is_error()).count();
-    let stored = match &node.value {
-        Value::Text(scalar) => {
-            reader.attachments.push(scalar.text().to_owned());
-            match reader.context.attachments.read(scalar.text()) {
-                Ok(bytes) => from_file(reader, &bytes, node),
-                Err(reason) => {
-                    reader.error(
-                        Rule::MissingConstantsFile,
-                        node.span,
-                        format!("`{}` cannot be read: {reason}", scalar.text()),
-                    );
-                    return;
-                }
-            }
-        }
-        Value::List(items) => entries(items, &mut reader.diagnostics),
-        _ => {
-            node.refuse::<()>(
-                "a list of own constants, or the name of a constants file",
-                &mut reader.diagnostics,
-            );
-            return;
-        }
+    let laid = match &node.value {
+        Value::Text(scalar) => from_file(reader, scalar),
+        Value::List(items) => overlaid(&reader.catalogue, items, &mut reader.diagnostics),
+        _ => node.refuse(
+            "a list of own constants, or the name of a constants file",
+            &mut reader.diagnostics,
+        ),
     };
-    if reader.diagnostics.iter().filter(|d| d.is_error()).count() > before {
-        return;
-    }
-    match reader.catalogue.overlaid(&stored) {
-        Ok(catalogue) => reader.catalogue = catalogue,
-        Err(error) => reader.error(Rule::BadConstants, node.span, error.to_string()),
+    if let Some(catalogue) = laid {
+        reader.catalogue = catalogue;
     }
 }
 
-/// The entries of a constants list: acid families, ions, forms.
-pub(super) fn entries(items: &[Node], diagnostics: &mut Vec<Diagnostic>) -> StoredConstants {
-    let mut stored = StoredConstants::default();
-    for item in items {
-        let Some(mapping) = item.as_mapping(diagnostics) else {
-            continue;
-        };
-        let mut keys = mapping.keys();
-        if let Some(name) = keys.text("substance", diagnostics) {
-            let name = name.text().to_owned();
-            stored
-                .substances
-                .extend(substance(&mut keys, name, diagnostics));
-        } else if let Some(name) = keys.text("ion", diagnostics) {
-            let name = name.text().to_owned();
-            stored.ions.extend(ion(&mut keys, name, diagnostics));
-        } else if let Some(name) = keys.text("form", diagnostics) {
-            let name = name.text().to_owned();
-            stored.forms.extend(form(&mut keys, name, diagnostics));
-        } else {
-            diagnostics.push(
-                Diagnostic::error(
-                    Rule::BadConstants,
-                    item.span,
-                    "the entry does not say what it is of",
-                )
-                .expecting("`substance: ...` first"),
-            );
-            continue;
-        }
-        keys.finish(diagnostics);
-    }
-    stored
+/// The constants that a text of the `constants` form states: a laboratory's own file, or the part of an answer that carries what it was
+/// computed with.
+///
+/// `None` if something is wrong with it, which is then reported with its place in that text.
+pub fn constants(text: &str, diagnostics: &mut Vec<Diagnostic>) -> Option<StoredConstants> {
+    let before = errors(diagnostics);
+    let root = yaml::read(text, Limits::FILE, diagnostics)?;
+    let entries = constant_entry::read(root.as_list(diagnostics)?, diagnostics);
+    (errors(diagnostics) == before).then_some(entries.stored)
 }
 
-/// A file of constants: a list, or a mapping with the list under `constants`.
-fn from_file(reader: &mut Reader<'_>, bytes: &[u8], node: &Node) -> StoredConstants {
-    let mut inside = Vec::new();
-    let stored = std::str::from_utf8(bytes).ok().and_then(|text| {
-        let root = yaml::read(text, Limits::BLOCK, &mut inside)?;
-        Some(entries(root.as_list(&mut inside)?, &mut inside))
-    });
-    if let Some(first) = inside.first() {
-        let message = format!(
-            "the constants file has errors, the first: {}",
-            first.message()
-        );
-        reader.error(Rule::BadConstants, node.span, message);
-    } else if stored.is_none() {
-        reader.error(
-            Rule::BadConstants,
-            node.span,
-            "the constants file holds no list of constants",
-        );
-    }
-    stored.unwrap_or_default()
-}
-
-fn text(
-    keys: &mut Keys<'_>,
-    key: &'static str,
+/// The library with the values of a list over it; `None` if something is wrong with the list, which is reported.
+fn overlaid(
+    catalogue: &Catalogue,
+    items: &[Node],
     diagnostics: &mut Vec<Diagnostic>,
-) -> Option<String> {
-    keys.text(key, diagnostics)
-        .map(|scalar| scalar.text().to_owned())
-}
-
-/// A number, as written.
-fn figure(
-    keys: &mut Keys<'_>,
-    key: &'static str,
-    diagnostics: &mut Vec<Diagnostic>,
-) -> Option<String> {
-    let scalar = keys.text(key, diagnostics)?;
-    amount::number(scalar, diagnostics).map(|number| number.to_string())
-}
-
-fn texts(keys: &mut Keys<'_>, key: &'static str, diagnostics: &mut Vec<Diagnostic>) -> Vec<String> {
-    let Some(node) = keys.take(key) else {
-        return Vec::new();
-    };
-    node.items()
-        .iter()
-        .filter_map(|item| {
-            item.as_text(diagnostics)
-                .map(|scalar| scalar.text().to_owned())
-        })
-        .collect()
-}
-
-fn charge(keys: &mut Keys<'_>, diagnostics: &mut Vec<Diagnostic>) -> Option<i8> {
-    let scalar = keys.text("charge", diagnostics)?;
-    let plain = scalar.text().trim_start_matches('+').replace('−', "-");
-    match plain.parse::<i8>() {
-        Ok(charge) if (-12..=12).contains(&charge) => Some(charge),
-        _ => {
-            diagnostics.push(
-                Diagnostic::error(Rule::BadConstants, scalar.span(), "not a charge")
-                    .expecting("a whole number from -12 to 12"),
-            );
+) -> Option<Catalogue> {
+    let before = errors(diagnostics);
+    let Entries { stored, names } = constant_entry::read(items, diagnostics);
+    if errors(diagnostics) > before {
+        return None;
+    }
+    match catalogue.overlaid(&stored) {
+        Ok(catalogue) => Some(catalogue),
+        Err(error) => {
+            let entry = names.iter().find(|(name, _)| concerns(&error, name));
+            let whole = items
+                .iter()
+                .map(|item| item.span)
+                .reduce(Span::to)
+                .unwrap_or(Span::at(0));
+            let span = entry.map_or(whole, |(_, span)| *span);
+            diagnostics.push(Diagnostic::error(
+                Rule::BadConstants,
+                span,
+                error.to_string(),
+            ));
             None
         }
     }
 }
 
-fn substance(
-    keys: &mut Keys<'_>,
-    name: String,
-    diagnostics: &mut Vec<Diagnostic>,
-) -> Option<StoredSubstance> {
-    let source = text(keys, "source", diagnostics);
-    let stored = StoredSubstance {
-        substance: name,
-        synonyms: texts(keys, "synonyms", diagnostics),
-        formula: text(keys, "formula", diagnostics),
-        cas: text(keys, "cas", diagnostics),
-        charge: charge(keys, diagnostics),
-        symbol: text(keys, "symbol", diagnostics),
-        states: texts(keys, "states", diagnostics),
-        ion_sizes: texts(keys, "ion sizes", diagnostics),
-        hazards: texts(keys, "hazards", diagnostics),
-        pka: Vec::new(),
-    };
-    let heading = keys.whole().heading();
-    let node = keys.required("pKa", diagnostics)?;
-    let mut pka = Vec::new();
-    for item in node.items() {
-        match &item.value {
-            Value::Mapping(mapping) => pka.extend(value(mapping, source.as_deref(), diagnostics)),
-            _ => {
-                let Some(scalar) = item.as_text(diagnostics) else {
-                    continue;
-                };
-                let Some(number) = amount::number(scalar, diagnostics) else {
-                    continue;
-                };
-                let Some(source) = source.clone() else {
-                    diagnostics.push(
-                        Diagnostic::error(
-                            Rule::MissingSource,
-                            heading,
-                            "own constants need their source",
-                        )
-                        .expecting("`source: ...`"),
-                    );
-                    return None;
-                };
-                pka.push(StoredPk {
-                    value: number.to_string(),
-                    source,
-                    ..StoredPk::default()
-                });
-            }
-        }
+/// Whether an error of the library is about the entry of that name.
+fn concerns(error: &LibraryError, entry: &str) -> bool {
+    match error {
+        LibraryError::File { .. } => false,
+        LibraryError::Figure { name, .. }
+        | LibraryError::Word { name, .. }
+        | LibraryError::Component { name, .. }
+        | LibraryError::Charge { name }
+        | LibraryError::Steps { name, .. }
+        | LibraryError::Formula { name, .. } => name.eq_ignore_ascii_case(entry),
     }
-    if pka.is_empty() || pka.len() > 12 {
-        diagnostics.push(Diagnostic::error(
-            Rule::BadConstants,
-            node.span,
-            "one to twelve pKa values are expected",
-        ));
-        return None;
-    }
-    Some(StoredSubstance { pka, ..stored })
 }
 
-/// One value of a step with its conditions.
-fn value(
-    mapping: &Mapping,
-    source: Option<&str>,
-    diagnostics: &mut Vec<Diagnostic>,
-) -> Option<StoredPk> {
-    let mut keys = mapping.keys();
-    let number = keys
-        .required_text("value", diagnostics)
-        .and_then(|scalar| amount::number(scalar, diagnostics));
-    let own_source = text(&mut keys, "source", diagnostics).or_else(|| source.map(str::to_owned));
-    if own_source.is_none() {
-        diagnostics.push(
-            Diagnostic::error(
-                Rule::MissingSource,
-                mapping.heading(),
-                "own constants need their source",
-            )
-            .expecting("`source: ...`"),
-        );
-    }
-    let temperature = keys.text("temperature", diagnostics).map(|scalar| {
-        let plain = scalar.text().trim_end_matches("°C").trim();
-        plain.to_owned()
+/// A file of constants: a list. Its faults are told with their lines, at the place where the block names it.
+fn from_file(reader: &mut Reader<'_>, name: &Scalar) -> Option<Catalogue> {
+    let path = name.text();
+    reader.attachments.push(path.to_owned());
+    let bytes = match reader.context.attachments.read(path) {
+        Ok(bytes) => bytes,
+        Err(reason) => {
+            reader.error(
+                Rule::MissingConstantsFile,
+                name.span(),
+                format!("`{path}` cannot be read: {reason}"),
+            );
+            return None;
+        }
+    };
+    let Ok(text) = std::str::from_utf8(&bytes) else {
+        let message = format!("`{path}` is not UTF-8");
+        reader.error(Rule::BadConstants, name.span(), message);
+        return None;
+    };
+    let mut inside = Vec::new();
+    let laid = yaml::read(text, Limits::FILE, &mut inside).and_then(|root| {
+        let items = root.as_list(&mut inside)?;
+        overlaid(&reader.catalogue, items, &mut inside)
     });
-    let equation = keys
-        .mapping("equation", diagnostics)
-        .and_then(|mapping| equation(mapping, diagnostics));
-    let stored = StoredPk {
-        value: number.map(|number| number.to_string()).unwrap_or_default(),
-        uncertainty: figure(&mut keys, "uncertainty", diagnostics),
-        kind: text(&mut keys, "kind", diagnostics),
-        ionic_strength: figure(&mut keys, "ionic strength", diagnostics),
-        medium: text(&mut keys, "medium", diagnostics),
-        temperature,
-        enthalpy: figure(&mut keys, "enthalpy", diagnostics),
-        heat_capacity: figure(&mut keys, "heat capacity", diagnostics),
-        thermal_source: text(&mut keys, "thermal source", diagnostics),
-        thermal_basis: text(&mut keys, "thermal basis", diagnostics),
-        equation,
-        source: own_source.unwrap_or_default(),
-        locator: text(&mut keys, "locator", diagnostics),
-        basis: text(&mut keys, "basis", diagnostics),
-        note: text(&mut keys, "note", diagnostics),
-        others: Vec::new(),
-    };
-    keys.finish(diagnostics);
-    number.map(|_| stored)
+    let lines = LineIndex::new(text);
+    for fault in inside {
+        let line = lines.line_column(fault.span().start()).line;
+        let message = format!("`{path}`, line {line}: {}", fault.message());
+        let mut placed = Diagnostic::error(fault.rule(), name.span(), message);
+        if let Some(expected) = fault.expected() {
+            placed = placed.expecting(expected);
+        }
+        if let Some(help) = fault.help() {
+            placed = placed.helped(help);
+        }
+        reader.diagnostics.push(placed);
+    }
+    laid
 }
 
-fn equation(mapping: &Mapping, diagnostics: &mut Vec<Diagnostic>) -> Option<StoredEquation> {
-    let mut keys = mapping.keys();
-    let form = keys
-        .required_text("form", diagnostics)
-        .map(|scalar| scalar.text().to_owned());
-    let coefficients = texts(&mut keys, "coefficients", diagnostics);
-    let from = figure(&mut keys, "from", diagnostics);
-    let to = figure(&mut keys, "to", diagnostics);
-    let source = keys
-        .required_text("source", diagnostics)
-        .map(|scalar| scalar.text().to_owned());
-    let basis = text(&mut keys, "basis", diagnostics);
-    keys.finish(diagnostics);
-    Some(StoredEquation {
-        form: form?,
-        coefficients,
-        from: from.unwrap_or_else(|| "0".to_owned()),
-        to: to.unwrap_or_else(|| "100".to_owned()),
-        source: source?,
-        basis,
-    })
+fn errors(diagnostics: &[Diagnostic]) -> usize {
+    diagnostics.iter().filter(|found| found.is_error()).count()
 }
 
-fn ion(keys: &mut Keys<'_>, name: String, diagnostics: &mut Vec<Diagnostic>) -> Option<StoredIon> {
-    let heading = keys.whole().heading();
-    let symbol = text(keys, "symbol", diagnostics).unwrap_or_else(|| name.clone());
-    let ion_size = figure(keys, "ion size", diagnostics);
-    let Some(charge) = charge(keys, diagnostics) else {
-        diagnostics.push(
-            Diagnostic::error(Rule::BadConstants, heading, "an ion needs its charge")
-                .expecting("`charge: 1`"),
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::substance::{Component, written};
+    use std::collections::BTreeMap;
+    use std::sync::Arc;
+
+    fn library() -> &'static Catalogue {
+        Catalogue::embedded().unwrap()
+    }
+
+    #[test]
+    fn what_an_answer_carries_reads_back_without_the_library() {
+        let mut water = Vec::new();
+        let own = constants(
+            "- {substance: water, pKa: 13.995, source: invented}",
+            &mut water,
         );
-        return None;
-    };
-    Some(StoredIon {
-        ion: name,
-        symbol,
-        charge,
-        ion_size,
-    })
-}
-
-fn form(
-    keys: &mut Keys<'_>,
-    name: String,
-    diagnostics: &mut Vec<Diagnostic>,
-) -> Option<StoredForm> {
-    let formula = text(keys, "formula", diagnostics);
-    let synonyms = texts(keys, "synonyms", diagnostics);
-    let cas = text(keys, "cas", diagnostics);
-    let hazards = texts(keys, "hazards", diagnostics);
-    let charge = charge(keys, diagnostics).unwrap_or(0);
-    let mut contains = BTreeMap::new();
-    let mapping = keys
-        .required("contains", diagnostics)?
-        .as_mapping(diagnostics)?;
-    for entry in mapping.entries() {
-        let Some(scalar) = entry.value.as_text(diagnostics) else {
-            continue;
-        };
-        match scalar.text().parse::<u8>() {
-            Ok(count) if count > 0 => {
-                contains.insert(entry.key.text().to_owned(), count);
+        let with_water = library().overlaid(&own.unwrap()).unwrap();
+        let forms: Vec<_> = library().forms().cloned().collect();
+        let ligands: Vec<_> = library().ligands().cloned().collect();
+        let mut ions = BTreeMap::new();
+        for form in &forms {
+            for (component, _) in &form.contains {
+                if let Component::Ion(ion) = component {
+                    ions.insert(ion.name.clone(), Arc::clone(ion));
+                }
             }
-            _ => diagnostics.push(
-                Diagnostic::error(Rule::BadConstants, scalar.span(), "not a count")
-                    .expecting("a whole number from 1 to 255"),
-            ),
+        }
+        let ions: Vec<_> = ions.into_values().collect();
+        let text = written(with_water.water(), &ligands, &ions, &forms);
+        let mut faults = Vec::new();
+        let stored = constants(&text, &mut faults);
+        assert_eq!(faults, []);
+        let alone = Catalogue::default().overlaid(&stored.unwrap()).unwrap();
+        assert_eq!(alone.water(), with_water.water());
+        for ligand in ligands {
+            let back = alone.ligand(&ligand.name).unwrap();
+            assert_eq!(back.charge, ligand.charge, "{}", ligand.name);
+            assert_eq!(back.states, ligand.states, "{}", ligand.name);
+            assert_eq!(back.ion_sizes, ligand.ion_sizes, "{}", ligand.name);
+            assert_eq!(back.hazards, ligand.hazards, "{}", ligand.name);
+            for (found, step) in back.steps.iter().zip(&ligand.steps) {
+                assert_eq!(found.preferred, step.preferred, "{}", ligand.name);
+            }
+        }
+        for form in forms {
+            let back = alone.find(&form.name).unwrap();
+            assert_eq!(back.formula, form.formula, "{}", form.name);
+            assert_eq!(back.protons(), form.protons(), "{}", form.name);
+            assert_eq!(back.all_hazards(), form.all_hazards(), "{}", form.name);
         }
     }
-    Some(StoredForm {
-        form: name,
-        synonyms,
-        formula,
-        cas,
-        contains,
-        charge,
-        hazards,
-    })
+
+    #[test]
+    fn faults_of_own_constants_stand_where_they_were_typed() {
+        let rows = [
+            (
+                "- {substance: a, charge: 0, pKa: [4.2]}",
+                Rule::MissingSource,
+                "substance",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: ['4,2'], source: x}",
+                Rule::DecimalComma,
+                "'4,2'",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: [7.2, 2.1], source: x}",
+                Rule::BadConstants,
+                "2.1",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: 42, source: x}",
+                Rule::OutOfRange,
+                "42",
+            ),
+            (
+                "- {substance: a, charge: 77, pKa: 4, source: x}",
+                Rule::BadConstants,
+                "77",
+            ),
+            (
+                "- {substance: a, charge: 0, pka: 4, source: x}",
+                Rule::MissingKey,
+                "substance",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: [{value: 4, kind: thermo}], source: x}",
+                Rule::UnknownChoice,
+                "thermo",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: [{value: 4, kind: conditional}], source: x}",
+                Rule::MissingKey,
+                "value",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: [{value: 4, uncertainty: -1}], source: x}",
+                Rule::OutOfRange,
+                "-1",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: [{value: 4, temperature: 400 K}], source: x}",
+                Rule::BadTemperature,
+                "400 K",
+            ),
+            (
+                "- {substance: a, charge: 0, pKa: 4, hazards: [acid], source: x}",
+                Rule::UnknownChoice,
+                "acid",
+            ),
+            ("- {ion: a}", Rule::MissingKey, "ion"),
+            ("- {formula: NaCl}", Rule::BadConstants, "{formula: NaCl}"),
+            (
+                "- {substance: a, charge: 0, pKa: 4, source: x}\n- {substance: a, charge: 0, pKa: 5, source: x}",
+                Rule::DuplicateSubstance,
+                "a",
+            ),
+        ];
+        for (text, rule, place) in rows {
+            let mut found = Vec::new();
+            assert_eq!(constants(text, &mut found), None, "{text}");
+            let rules: Vec<Rule> = found.iter().map(Diagnostic::rule).collect();
+            assert!(rules.contains(&rule), "{text}: {found:?}");
+            let fault = found.iter().find(|fault| fault.rule() == rule).unwrap();
+            let span = fault.span().of(text).unwrap();
+            assert_eq!(span, place, "{text}");
+        }
+    }
+
+    #[test]
+    fn an_error_of_the_library_is_told_at_the_entry() {
+        let text = "- {substance: phosphoric acid, pKa: [2.1, 7.2], source: x}\n- {substance: a, pKa: 4, source: x}";
+        let mut found = Vec::new();
+        let root = yaml::read(text, Limits::FILE, &mut found).unwrap();
+        let items = root.as_list(&mut found).unwrap();
+        assert!(overlaid(library(), items, &mut found).is_none());
+        assert_eq!(found[0].span().of(text), Some("phosphoric acid"));
+        assert!(found[0].message().contains("3 dissociation steps"));
+    }
 }

@@ -1,53 +1,34 @@
 //! What a liquid is made of, in the short and the long form.
 
-use crate::block::outline::reference;
+use crate::block::origin::{portion, substance};
 use crate::block::reader::Reader;
-use crate::block::{SolutionError, amount};
+use crate::block::{amount, charge, content_amount, item};
 use crate::problem::{
-    Composition, Content, ContentAmount, Corrections, Ingredient, Input, InputId, MadeUp,
-    SolutionPortion, Strength, Taken, Trace,
+    Composition, Content, ContentAmount, Corrections, Ingredient, Input, InputId, MadeUp, Trace,
 };
-use crate::quantity::{
-    Amount, AmountConcentration, Density, Dimension, Mass, MassConcentration, MassFraction,
-    Molality, Number, Unit, Volume,
-};
+use crate::quantity::{Dimension, Unit, Volume};
 use crate::substance::Form;
 use crate::text::{Diagnostic, Rule, Span};
 use crate::yaml::{Keys, Mapping, Node, Scalar, Value};
-use std::sync::Arc;
+use std::collections::BTreeMap;
 
 /// Most ingredients of one liquid.
 const MOST_INGREDIENTS: usize = 64;
 
-/// A liquid with the keys `volume` and `contents` of a mapping. `volume_key` says whether the volume belongs to it.
+/// A liquid with the keys `volume` and `contents` of a mapping.
 pub(super) fn composition(
     reader: &mut Reader<'_>,
     keys: &mut Keys<'_>,
     id: &InputId,
-    volume_key: bool,
 ) -> Option<Composition> {
-    let volume = if volume_key {
-        let scalar = keys.text("volume", &mut reader.diagnostics);
-        scalar.map(|scalar| {
-            (
-                reader.input::<Volume>(InputId::new("volume").in_same_place(id), scalar),
-                scalar.span(),
-            )
-        })
-    } else {
-        None
-    };
+    let volume = keys.text("volume", &mut reader.diagnostics);
     let heading = keys.whole().heading();
+    let volume =
+        volume.map(|scalar| reader.input(InputId::new("volume").in_same_place(id), scalar));
     let node = keys.required("contents", &mut reader.diagnostics)?;
-    let ingredients = ingredients(reader, node, id);
+    let ingredients = ingredients(reader, node, id, volume.as_ref().and_then(Option::as_ref));
     let made_up = match volume {
-        Some((Some(volume), span)) => {
-            if volume.value().base() <= 0.0 {
-                reader.error(Rule::OutOfRange, span, "a volume is more than nothing");
-            }
-            MadeUp::To(volume)
-        }
-        Some((None, _)) => return None,
+        Some(volume) => MadeUp::To(volume?),
         None => MadeUp::Unstated,
     };
     if made_up == MadeUp::Unstated && ingredients.iter().any(needs_volume) {
@@ -80,36 +61,26 @@ fn needs_volume(ingredient: &Ingredient) -> bool {
     }
 }
 
-/// The value of `contents`: `water`, a mapping of names to amounts, or a list of items.
-pub(super) fn ingredients(reader: &mut Reader<'_>, node: &Node, id: &InputId) -> Vec<Ingredient> {
+/// The value of `contents`: `water`, a mapping of names to amounts, or a list of items; `volume` is that of the whole, where stated.
+pub(super) fn ingredients(
+    reader: &mut Reader<'_>,
+    node: &Node,
+    id: &InputId,
+    volume: Option<&Input<Volume>>,
+) -> Vec<Ingredient> {
     let before = reader.diagnostics.len();
-    let mut ingredients = Vec::new();
-    let mut spans = Vec::new();
-    match &node.value {
+    let (ingredients, spans) = match &node.value {
         Value::Text(scalar) if scalar.text() == "water" => return Vec::new(),
-        Value::Mapping(mapping) => {
-            for entry in mapping.entries() {
-                spans.push(entry.key.span());
-                ingredients.push(short(reader, &entry.key, &entry.value, id));
-            }
-        }
-        Value::List(items) => {
-            for (index, item) in items.iter().enumerate() {
-                spans.push(item.span);
-                let item_id = id.within(&format!("{}", index + 1));
-                let Some(mapping) = item.as_mapping(&mut reader.diagnostics) else {
-                    continue;
-                };
-                ingredients.push(long(reader, mapping, &item_id));
-            }
-        }
+        Value::Mapping(mapping) => short_form(reader, mapping, id),
+        Value::List(items) => long_form(reader, items, id),
         _ => {
             node.refuse::<()>(
                 "`water`, a mapping of substances to amounts, or a list of items",
                 &mut reader.diagnostics,
             );
+            return Vec::new();
         }
-    }
+    };
     if spans.is_empty() && reader.diagnostics.len() == before {
         reader.diagnostics.push(
             Diagnostic::error(Rule::EmptyContents, node.span, "nothing is stated")
@@ -125,7 +96,46 @@ pub(super) fn ingredients(reader: &mut Reader<'_>, node: &Node, id: &InputId) ->
     }
     let found: Vec<Ingredient> = ingredients.into_iter().flatten().collect();
     if reader.diagnostics.len() == before {
-        unbalanced(reader, &found, &spans);
+        charge::check(reader, &found, &spans, volume);
+    }
+    found
+}
+
+type Found = (Vec<Option<Ingredient>>, Vec<Span>);
+
+fn short_form(reader: &mut Reader<'_>, mapping: &Mapping, id: &InputId) -> Found {
+    let mut found = Found::default();
+    let mut seen: BTreeMap<String, Span> = BTreeMap::new();
+    for entry in mapping.entries() {
+        let span = entry.key.span();
+        let ingredient = short(reader, &entry.key, &entry.value, id);
+        if let Some(Ingredient::Substance(content)) = &ingredient
+            && let Some(first) = seen.insert(content.form.name.clone(), span)
+        {
+            reader.diagnostics.push(
+                Diagnostic::error(
+                    Rule::DuplicateSubstance,
+                    span,
+                    format!("{} is stated twice", content.form.name),
+                )
+                .and(first, "first here")
+                .helped("add the amounts, or use the long form with an item for each portion"),
+            );
+        }
+        found.0.push(ingredient);
+        found.1.push(span);
+    }
+    found
+}
+
+fn long_form(reader: &mut Reader<'_>, items: &[Node], id: &InputId) -> Found {
+    let mut found = Found::default();
+    for (index, item) in items.iter().enumerate() {
+        found.1.push(item.span);
+        if let Some(mapping) = item.as_mapping(&mut reader.diagnostics) {
+            let item_id = id.within(&(index + 1).to_string());
+            found.0.push(long(reader, mapping, &item_id));
+        }
     }
     found
 }
@@ -134,88 +144,38 @@ pub(super) fn ingredients(reader: &mut Reader<'_>, node: &Node, id: &InputId) ->
 fn short(reader: &mut Reader<'_>, name: &Scalar, value: &Node, id: &InputId) -> Option<Ingredient> {
     let form = substance(reader, name);
     let scalar = value.as_text(&mut reader.diagnostics)?;
-    let form = form?;
-    let item = id.within(&form.name);
-    let amount = match amount::unit_of(scalar) {
-        Some(unit) if Volume::UNITS.contains(&unit) => {
-            reader.diagnostics.push(
-                Diagnostic::error(
-                    Rule::AmountNeeded,
-                    scalar.span(),
-                    "a volume alone does not say how much of the substance is in it",
-                )
-                .helped(
-                    "use the long form: `- substance: ...`, `volume: ...`, `concentration: ...`",
-                ),
-            );
-            return None;
-        }
-        Some(Unit::PercentByMass | Unit::Percent) => {
-            reader.diagnostics.push(
-                Diagnostic::error(Rule::AmountNeeded, scalar.span(), "a mass fraction needs the density, and how much was taken")
-                    .helped("use the long form: `- substance: ...`, `volume: ...`, `concentration: 37 % w/w`, `density: 1.18 g/mL`"),
-            );
-            return None;
-        }
-        Some(unit) if Mass::UNITS.contains(&unit) => {
-            weighable(reader, &form, scalar.span())?;
-            ContentAmount::Mass(reader.input(item.within("mass"), scalar)?)
-        }
-        Some(unit) if Amount::UNITS.contains(&unit) => {
-            ContentAmount::Amount(reader.input(item.within("amount"), scalar)?)
-        }
-        _ => concentration(reader, &form, scalar, &item)?,
-    };
+    let item = id.within(form.as_ref().map_or(name.text(), |form| &form.name));
+    let amount = short_amount(reader, form.as_deref(), scalar, &item);
     Some(Ingredient::Substance(Box::new(Content {
         id: item,
-        form,
-        amount,
+        form: form?,
+        amount: amount?,
         corrections: Corrections::default(),
         trace: Trace::default(),
     })))
 }
 
-/// A concentration in the final solution, in whichever unit.
-fn concentration(
+fn short_amount(
     reader: &mut Reader<'_>,
-    form: &Form,
+    form: Option<&Form>,
     scalar: &Scalar,
     item: &InputId,
 ) -> Option<ContentAmount> {
-    let id = item.within("concentration");
-    match amount::unit_of(scalar) {
-        Some(unit) if Molality::UNITS.contains(&unit) => {
-            Some(ContentAmount::Molality(reader.input(id, scalar)?))
-        }
-        Some(unit) if MassConcentration::UNITS.contains(&unit) => {
-            weighable(reader, form, scalar.span())?;
-            Some(ContentAmount::MassConcentration(reader.input(id, scalar)?))
-        }
-        _ => Some(ContentAmount::Concentration(
-            reader.input::<AmountConcentration>(id, scalar)?,
-        )),
-    }
-}
-
-/// A mass needs a molar mass, hence a formula.
-fn weighable(reader: &mut Reader<'_>, form: &Form, span: Span) -> Option<()> {
-    if form.formula.is_none() {
-        reader.diagnostics.push(
-            Diagnostic::error(
-                Rule::WrongUnit,
-                span,
-                format!(
-                    "{} has no formula here, so a mass of it says no amount",
-                    form.name
-                ),
-            )
-            .expecting(
-                "mol/L, mmol/L, mol/kg, mol, mmol; or `formula: ...` with the own constants",
-            ),
-        );
-        return None;
-    }
-    Some(())
+    let (message, help) = match amount::unit_of(scalar) {
+        Some(unit) if Volume::UNITS.contains(&unit) => (
+            "a volume alone does not say how much of the substance is in it",
+            "use the long form: `- substance: ...`, `volume: ...`, `concentration: ...`",
+        ),
+        Some(Unit::PercentByMass | Unit::Percent) => (
+            "a mass fraction needs the density, and how much was taken",
+            "use the long form: `- substance: ...`, `volume: ...`, `concentration: 37 % w/w`, `density: 1.18 g/mL`",
+        ),
+        _ => return content_amount::any_amount(reader, form, scalar, item),
+    };
+    reader
+        .diagnostics
+        .push(Diagnostic::error(Rule::AmountNeeded, scalar.span(), message).helped(help));
+    None
 }
 
 /// A list item with its keys.
@@ -229,11 +189,11 @@ fn long(reader: &mut Reader<'_>, mapping: &Mapping, id: &InputId) -> Option<Ingr
                 .required::<Volume>(&mut keys, "volume", id)
                 .map(Ingredient::Water)
         } else {
-            item(reader, &mut keys, name, id)
+            item::read(reader, &mut keys, name, id)
                 .map(|content| Ingredient::Substance(Box::new(content)))
         }
     } else {
-        for key in ITEM_KEYS {
+        for key in item::KEYS {
             keys.take(key);
         }
         None
@@ -242,383 +202,149 @@ fn long(reader: &mut Reader<'_>, mapping: &Mapping, id: &InputId) -> Option<Ingr
     found
 }
 
-const ITEM_KEYS: [&str; 13] = [
-    "mass",
-    "volume",
-    "amount",
-    "concentration",
-    "density",
-    "lot",
-    "expiry",
-    "assay",
-    "purity",
-    "water",
-    "factor",
-    "replicates",
-    "solution",
-];
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{faults, one_fault, problem};
+    use crate::problem::Problem;
 
-/// A portion of another block's solution: `solution: stocks/2026-10.md#naoh-01` with its volume.
-pub(super) fn portion(
-    reader: &mut Reader<'_>,
-    keys: &mut Keys<'_>,
-    scalar: &Scalar,
-    id: &InputId,
-) -> Option<SolutionPortion> {
-    let volume = reader.required::<Volume>(keys, "volume", id);
-    let composition = solution(reader, scalar);
-    Some(SolutionPortion {
-        volume: volume?,
-        reference: Some(reference(scalar.text())),
-        composition: composition?,
-    })
-}
-
-/// The composition of another block's solution, its inputs under that block's name.
-pub(super) fn solution(reader: &mut Reader<'_>, scalar: &Scalar) -> Option<Arc<Composition>> {
-    let wanted = reference(scalar.text());
-    reader.references.push(wanted.clone());
-    match reader.context.solutions.solution(&wanted) {
-        Ok(composition) => Some(Arc::new(composition.seen_from(scalar.text()))),
-        Err(error) => {
-            let rule = match error {
-                SolutionError::Unknown { .. } | SolutionError::Page { .. } => Rule::UnknownSolution,
-                SolutionError::Circular => Rule::CircularSolution,
-                SolutionError::Faulty => Rule::SolutionNotUsable,
-            };
-            let mut diagnostic = Diagnostic::error(
-                rule,
-                scalar.span(),
-                format!("`{}` cannot be used: {error}", scalar.text()),
-            );
-            if let SolutionError::Unknown { labels } = &error {
-                diagnostic =
-                    diagnostic.did_you_mean(&wanted.label, labels.iter().map(String::as_str));
-            }
-            reader.diagnostics.push(diagnostic);
-            None
+    fn ingredients(keys: &str) -> Vec<Ingredient> {
+        match problem("speciation", keys) {
+            Problem::Speciation(task) => task.composition.ingredients,
+            other => panic!("{other:?}"),
         }
     }
-}
 
-/// One substance with how much of it, and what its certificate says.
-fn item(
-    reader: &mut Reader<'_>,
-    keys: &mut Keys<'_>,
-    name: &Scalar,
-    id: &InputId,
-) -> Option<Content> {
-    let form = substance(reader, name);
-    let id = form
-        .as_ref()
-        .map_or_else(|| id.clone(), |form| id.renamed(&form.name));
-    let corrections = corrections(reader, keys, &id);
-    let trace = trace(reader, keys);
-    let replicates = keys.take("replicates");
-    let mass = keys.text("mass", &mut reader.diagnostics);
-    let volume = keys.text("volume", &mut reader.diagnostics);
-    let substance_amount = keys.text("amount", &mut reader.diagnostics);
-    let strength = keys.text("concentration", &mut reader.diagnostics);
-    let density = reader.amount::<Density>(keys, "density", &id);
-    let form = form?;
-    let amount = match (mass, volume, substance_amount, strength) {
-        (None, None, Some(scalar), None) => {
-            ContentAmount::Amount(reader.input(id.within("amount"), scalar)?)
-        }
-        (Some(scalar), None, None, None) => {
-            weighable(reader, &form, scalar.span())?;
-            ContentAmount::Mass(reader.input(id.within("mass"), scalar)?)
-        }
-        (None, None, None, Some(scalar)) => concentration(reader, &form, scalar, &id)?,
-        (None, Some(scalar), None, Some(strength_scalar)) => {
-            let taken = Taken::Volume(reader.input(id.within("volume"), scalar)?);
-            let strength = self::strength(reader, &form, strength_scalar, density, &id)?;
-            checked_stock(reader, taken, strength, strength_scalar.span())?
-        }
-        (Some(scalar), None, None, Some(strength_scalar)) => {
-            let taken = Taken::Mass(reader.input(id.within("mass"), scalar)?);
-            let strength = self::strength(reader, &form, strength_scalar, density, &id)?;
-            checked_stock(reader, taken, strength, strength_scalar.span())?
-        }
-        (None, None, None, None) => match replicates {
-            Some(node) => return replicated(reader, node, id, form, corrections, trace),
-            None => {
-                reader.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::AmountNeeded,
-                        name.span(),
-                        format!("how much {} is not stated", form.name),
-                    )
-                    .expecting(
-                        "`mass`, `amount`, `concentration`, or `volume` with `concentration`",
-                    ),
-                );
-                return None;
-            }
-        },
-        (None, Some(scalar), None, None) => {
-            reader.diagnostics.push(
-                Diagnostic::error(
-                    Rule::AmountNeeded,
-                    scalar.span(),
-                    "a volume alone does not say how much of the substance is in it",
-                )
-                .expecting("`concentration: ...` beside it"),
-            );
-            return None;
-        }
-        _ => {
-            reader.error(
-                Rule::TooManyAmounts,
-                name.span(),
-                format!("how much {} is stated in more than one way", form.name),
-            );
-            return None;
-        }
-    };
-    if let Some(node) = replicates {
-        reader.error(
-            Rule::ConflictingKeys,
-            node.span,
-            "`replicates` stands in place of a single value, not beside it",
+    fn amounts(keys: &str) -> Vec<ContentAmount> {
+        let of = |ingredient| match ingredient {
+            Ingredient::Substance(content) => content.amount,
+            other => panic!("{other:?}"),
+        };
+        ingredients(keys).into_iter().map(of).collect()
+    }
+
+    #[test]
+    fn the_unit_tells_what_is_stated() {
+        let amounts = amounts(
+            "volume: 1 L\ncontents:\n  malonic acid: 0.0350 mol/L\n  NaCl: 0.1 mol/kg\n  tris: 6 g/L\n  KCl: 7 g\n  citric acid: 2 mmol\n",
+        );
+        assert!(matches!(amounts[0], ContentAmount::Concentration(_)));
+        assert!(matches!(amounts[1], ContentAmount::Molality(_)));
+        assert!(matches!(amounts[2], ContentAmount::MassConcentration(_)));
+        assert!(matches!(amounts[3], ContentAmount::Mass(_)));
+        assert!(matches!(amounts[4], ContentAmount::Amount(_)));
+    }
+
+    #[test]
+    fn an_input_has_its_name_and_its_place() {
+        let text = "label: a\ntask: speciation\ncontents:\n  malonic acid: 0.0350 mol/L\n";
+        let reading = crate::block::trial::reading(text);
+        let id = InputId::new("contents")
+            .within("malonic acid")
+            .within("concentration");
+        assert_eq!(
+            reading.places.of(&id).and_then(|span| span.of(text)),
+            Some("0.0350 mol/L")
         );
     }
-    Some(Content {
-        id,
-        form,
-        amount,
-        corrections,
-        trace,
-    })
-}
 
-/// A stock taken by volume needs its density where its strength is a mass fraction; taken by mass, where it is not.
-fn checked_stock(
-    reader: &mut Reader<'_>,
-    taken: Taken,
-    strength: Strength,
-    span: Span,
-) -> Option<ContentAmount> {
-    let lacks = match (&taken, &strength) {
-        (Taken::Volume(_), Strength::MassFraction { density, .. }) => density.is_none(),
-        (Taken::Mass(_), Strength::MassFraction { .. }) | (Taken::Volume(_), _) => false,
-        (Taken::Mass(_), _) => {
-            reader.diagnostics.push(
-                Diagnostic::error(
-                    Rule::DensityNeeded,
-                    span,
-                    "a mass of a solution has an amount only by its mass fraction",
-                )
-                .expecting("`concentration: ... % w/w`, or a `volume` in place of the mass"),
-            );
-            return None;
-        }
-    };
-    if lacks {
-        reader.diagnostics.push(
-            Diagnostic::error(
-                Rule::DensityNeeded,
-                span,
-                "a volume of a stock given in % w/w has an amount only with its density",
-            )
-            .expecting("`density: 1.685 g/mL`"),
+    #[test]
+    fn water_is_written_so_and_nothing_is_not() {
+        assert_eq!(ingredients("contents: water\n"), []);
+        one_fault(
+            "speciation",
+            "contents: []\n",
+            Rule::EmptyContents,
+            "[]",
+            "contents: water",
         );
-        return None;
-    }
-    Some(ContentAmount::Stock { taken, strength })
-}
-
-/// The strength of a stock, in whichever unit.
-pub(super) fn strength(
-    reader: &mut Reader<'_>,
-    form: &Form,
-    scalar: &Scalar,
-    density: Option<Input<Density>>,
-    id: &InputId,
-) -> Option<Strength> {
-    let id = id.within("concentration");
-    match amount::unit_of(scalar) {
-        Some(Unit::PercentByMass | Unit::Percent) => {
-            weighable(reader, form, scalar.span())?;
-            let fraction = reader.input::<MassFraction>(id, scalar)?;
-            if fraction.value().base() > 1.0 {
-                reader.error(Rule::OutOfRange, scalar.span(), "more than 100 %");
-                return None;
-            }
-            Some(Strength::MassFraction { fraction, density })
-        }
-        Some(unit) if MassConcentration::UNITS.contains(&unit) => {
-            weighable(reader, form, scalar.span())?;
-            Some(Strength::MassConcentration(reader.input(id, scalar)?))
-        }
-        _ => Some(Strength::Concentration(reader.input(id, scalar)?)),
-    }
-}
-
-/// `replicates: [19.21 g, 19.22 g]`: the mean, with the standard deviation of the mean.
-fn replicated(
-    reader: &mut Reader<'_>,
-    node: &Node,
-    id: InputId,
-    form: Arc<Form>,
-    corrections: Corrections,
-    trace: Trace,
-) -> Option<Content> {
-    let scalars: Vec<&Scalar> = node
-        .as_list(&mut reader.diagnostics)?
-        .iter()
-        .filter_map(|item| item.as_text(&mut reader.diagnostics))
-        .collect();
-    let unit = scalars.first().and_then(|scalar| amount::unit_of(scalar));
-    let amount = match unit {
-        Some(unit) if Mass::UNITS.contains(&unit) => {
-            weighable(reader, &form, node.span)?;
-            ContentAmount::Mass(mean(reader, &scalars, node, id.within("mass"))?)
-        }
-        Some(unit) if Amount::UNITS.contains(&unit) => {
-            ContentAmount::Amount(mean(reader, &scalars, node, id.within("amount"))?)
-        }
-        Some(unit) if Molality::UNITS.contains(&unit) => {
-            ContentAmount::Molality(mean(reader, &scalars, node, id.within("concentration"))?)
-        }
-        _ => {
-            ContentAmount::Concentration(mean(reader, &scalars, node, id.within("concentration"))?)
-        }
-    };
-    Some(Content {
-        id,
-        form,
-        amount,
-        corrections,
-        trace,
-    })
-}
-
-fn mean<D: Dimension>(
-    reader: &mut Reader<'_>,
-    scalars: &[&Scalar],
-    node: &Node,
-    id: InputId,
-) -> Option<Input<D>> {
-    let mut readings = Vec::new();
-    for scalar in scalars {
-        readings.push(reader.input::<D>(id.clone(), scalar)?.measured);
-    }
-    let Some(measured) = crate::quantity::Measured::mean(&readings) else {
-        reader.diagnostics.push(
-            Diagnostic::error(
-                Rule::EmptyList,
-                node.span,
-                "replicates are at least two readings in one unit",
-            )
-            .expecting("`replicates: [19.21 g, 19.22 g]`"),
+        one_fault(
+            "speciation",
+            "contents:\n",
+            Rule::MissingValue,
+            "",
+            "`water`",
         );
-        return None;
-    };
-    reader.input_place(&id, node.span);
-    Some(Input {
-        id,
-        measured,
-        replicates: readings,
-    })
-}
-
-/// Purity or assay, moisture, titre.
-pub(super) fn corrections(
-    reader: &mut Reader<'_>,
-    keys: &mut Keys<'_>,
-    id: &InputId,
-) -> Corrections {
-    let purity = reader.amount::<MassFraction>(keys, "purity", id);
-    let assay = keys.take_entry("assay");
-    let purity = match (purity, assay) {
-        (purity, None) => purity,
-        (Some(_), Some(entry)) => {
-            reader.error(
-                Rule::ConflictingKeys,
-                entry.key.span(),
-                "`assay` and `purity` mean the same; state one",
-            );
-            None
-        }
-        (None, Some(entry)) => entry
-            .value
-            .as_text(&mut reader.diagnostics)
-            .and_then(|scalar| reader.input(id.within("assay"), scalar)),
-    };
-    Corrections {
-        purity,
-        water: reader.amount::<MassFraction>(keys, "water", id),
-        factor: reader.amount::<Number>(keys, "factor", id),
     }
-}
 
-/// Lot and expiry, as written.
-pub(super) fn trace(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Trace {
-    let mut text = |key| {
-        keys.text(key, &mut reader.diagnostics)
-            .map(|scalar| scalar.text().to_owned())
-    };
-    Trace {
-        lot: text("lot"),
-        expiry: text("expiry"),
+    #[test]
+    fn masses_need_the_volume() {
+        one_fault(
+            "speciation",
+            "contents:\n  NaCl: 5 g\n",
+            Rule::VolumeNeeded,
+            "label",
+            "`volume: ...`",
+        );
     }
-}
 
-/// The substance that a name means.
-pub(super) fn substance(reader: &mut Reader<'_>, name: &Scalar) -> Option<Arc<Form>> {
-    match reader.catalogue.find(name.text()) {
-        Ok(form) => Some(Arc::clone(form)),
-        Err(error) => {
-            let diagnostic = Diagnostic::error(
+    #[test]
+    fn faults_of_a_short_item() {
+        for (keys, rule, place, help) in [
+            (
+                "contents:\n  malonic acd: 1 mol/L\n",
                 Rule::UnknownSubstance,
-                name.span(),
-                format!("`{}` is not in the library", name.text()),
-            )
-            .expecting("a name, formula or CAS number of the library, or own `constants`")
-            .did_you_mean(name.text(), error.names.iter().map(String::as_str));
-            reader.diagnostics.push(diagnostic);
-            None
+                "malonic acd",
+                "`malonic acid`",
+            ),
+            (
+                "contents:\n  NaCl: 5 mL\n",
+                Rule::AmountNeeded,
+                "5 mL",
+                "long form",
+            ),
+            (
+                "contents:\n  HCl: 37 % w/w\n",
+                Rule::AmountNeeded,
+                "37 % w/w",
+                "density",
+            ),
+            ("contents:\n  HCl: 0.1 N\n", Rule::RefusedUnit, "N", "mol/L"),
+            (
+                "contents:\n  HCl: 0.1\n",
+                Rule::MissingUnit,
+                "0.1",
+                "mol/kg",
+            ),
+            ("contents:\n  HCl: 25 °C\n", Rule::WrongUnit, "°C", "mol/kg"),
+            (
+                "contents:\n  HCl: 0,1 mol/L\n",
+                Rule::DecimalComma,
+                "0,1",
+                "`0.1`",
+            ),
+            (
+                "contents:\n  HCl: -0.1 mol/L\n",
+                Rule::OutOfRange,
+                "-0.1 mol/L",
+                "more than nothing",
+            ),
+            (
+                "contents:\n  HCl: 100 mol/L\n",
+                Rule::OutOfRange,
+                "100 mol/L",
+                "60 mol/L",
+            ),
+        ] {
+            one_fault("speciation", keys, rule, place, help);
         }
     }
-}
 
-/// Ions given alone must leave no charge.
-fn unbalanced(reader: &mut Reader<'_>, ingredients: &[Ingredient], spans: &[Span]) {
-    let (mut charge, mut size) = (0.0, 0.0);
-    let mut first = None;
-    for (ingredient, span) in ingredients.iter().zip(spans) {
-        let Ingredient::Substance(content) = ingredient else {
-            continue;
-        };
-        if content.form.charge == 0 {
-            continue;
-        }
-        let amount = match &content.amount {
-            ContentAmount::Concentration(input) => input.value().base(),
-            ContentAmount::Molality(input) => input.value().base(),
-            ContentAmount::Amount(input) => input.value().base(),
-            _ => continue,
-        };
-        let equivalents = f64::from(content.form.charge) * amount;
-        charge += equivalents;
-        size += equivalents.abs();
-        first.get_or_insert(*span);
+    #[test]
+    fn an_unknown_substance_does_not_hide_what_is_wrong_with_its_amount() {
+        let found = faults("speciation", "contents:\n  malonic acd: 0,1 mol/L\n");
+        let rules: Vec<Rule> = found.iter().map(|fault| fault.0).collect();
+        assert_eq!(rules, [Rule::UnknownSubstance, Rule::DecimalComma]);
     }
-    let Some(span) = first else { return };
-    if charge.abs() > 1e-9 * size {
-        let (sign, ion) = if charge > 0.0 {
-            ("positive", "an anion such as `chloride ion`")
-        } else {
-            ("negative", "a cation such as `sodium ion`")
-        };
-        reader.diagnostics.push(
-            Diagnostic::error(
-                Rule::UnbalancedIon,
-                span,
-                format!("the ions given alone leave {:.4e} of {sign} charge in the unit of their amounts", charge.abs()),
-            )
-            .expecting(format!("{ion} of the same size, or salts in place of ions")),
+
+    #[test]
+    fn one_substance_under_two_names_is_found_out() {
+        one_fault(
+            "speciation",
+            "contents:\n  NaCl: 0.1 mol/L\n  sodium chloride: 0.2 mol/L\n",
+            Rule::DuplicateSubstance,
+            "sodium chloride",
+            "add the amounts",
         );
     }
 }

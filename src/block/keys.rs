@@ -241,3 +241,50 @@ pub const KEYS: [KeyEntry; 41] = [
         "[phosphoric acid, pKa 1 of phosphoric acid]",
     ),
 ];
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{faults, statement};
+    use crate::problem::Problem;
+    use crate::text::Rule;
+    use std::collections::BTreeSet;
+
+    #[test]
+    fn the_readers_know_the_keys_of_the_table_and_no_others() {
+        for task in Problem::TASKS {
+            let found = faults(task, "no such key: 1\n");
+            let (_, _, expected) = found
+                .iter()
+                .find(|(rule, place, _)| *rule == Rule::UnknownKey && place == "no such key")
+                .unwrap();
+            let read: BTreeSet<&str> = expected.split('`').skip(1).step_by(2).collect();
+            let table: BTreeSet<&str> = KEYS
+                .iter()
+                .filter(|entry| entry.tasks.is_empty() || entry.tasks.contains(&task))
+                .map(|entry| entry.key)
+                .collect();
+            assert_eq!(read, table, "{task}");
+        }
+    }
+
+    #[test]
+    fn the_examples_of_keys_of_every_block_make_a_block() {
+        let mut text = String::from("volume: 1.000 L\ncontents: {acetic acid: 0.100 mol/L}\n");
+        for entry in KEYS.iter().filter(|entry| entry.tasks.is_empty()) {
+            text.push_str(entry.key);
+            text.push_str(": ");
+            text.push_str(entry.example);
+            text.push('\n');
+        }
+        drop(statement(&text));
+    }
+
+    #[test]
+    fn each_key_stands_once() {
+        let mut keys: Vec<&str> = KEYS.iter().map(|entry| entry.key).collect();
+        keys.sort_unstable();
+        keys.dedup();
+        assert_eq!(keys.len(), KEYS.len());
+    }
+}

@@ -6,21 +6,41 @@
 
 mod adjustment;
 mod amount;
+mod certificate;
+mod charge;
+mod choice;
 mod conditions;
+mod constant_entry;
 mod constants;
+mod content_amount;
 mod contents;
 mod context;
 mod defaults;
+mod figure;
+mod fit;
+mod item;
 mod keys;
+mod label;
 mod mixing;
+mod origin;
 mod outline;
+mod piece;
+mod pk_value;
 mod preparation;
+mod range;
 mod reader;
 mod readings;
 mod remarks;
+mod replicates;
 mod source;
+mod spread;
+mod stock;
+mod task;
 mod titration;
+#[cfg(test)]
+mod trial;
 
+pub use constants::constants;
 pub use context::{Attachments, Context, SolutionError, Solutions};
 pub use defaults::Defaults;
 pub use keys::{KEYS, KeyEntry};

@@ -10,6 +10,8 @@ pub struct Outline {
     pub label: Option<String>,
     /// Other blocks whose solutions it uses.
     pub references: Vec<SolutionReference>,
+    /// Files that it reads, by their paths relative to the page.
+    pub attachments: Vec<String>,
 }
 
 /// Glances at a block; what cannot be read is passed over.
@@ -21,8 +23,13 @@ pub fn outline(content: &str) -> Outline {
     };
     if let Value::Mapping(mapping) = &root.value {
         for entry in mapping.entries() {
-            if let ("label", Value::Text(scalar)) = (entry.key.text(), &entry.value.value) {
-                outline.label = Some(scalar.text().to_owned());
+            let Value::Text(scalar) = &entry.value.value else {
+                continue;
+            };
+            match entry.key.text() {
+                "label" => outline.label = Some(scalar.text().to_owned()),
+                "readings" | "constants" => outline.attachments.push(scalar.text().to_owned()),
+                _ => {}
             }
         }
     }
@@ -66,9 +73,10 @@ mod tests {
     #[test]
     fn references_are_found_wherever_they_stand() {
         let outline = outline(
-            "label: a\nportions:\n  - volume: 1 L\n    solution: stocks/x.md#b\n  - {volume: 1 L, solution: c}\n",
+            "label: a\nreadings: r.csv\nportions:\n  - volume: 1 L\n    solution: stocks/x.md#b\n  - {volume: 1 L, solution: c}\n",
         );
         assert_eq!(outline.label.as_deref(), Some("a"));
+        assert_eq!(outline.attachments, ["r.csv"]);
         assert_eq!(
             outline.references,
             [reference("stocks/x.md#b"), reference("c")]

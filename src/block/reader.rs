@@ -1,14 +1,13 @@
 //! The block as a whole: its keys, in whatever order they stand, to a statement.
 
-use crate::block::{
-    Context, Defaults, adjustment, amount, conditions, constants, contents, mixing, preparation,
-    remarks, titration,
-};
-use crate::problem::{Input, InputId, Label, Problem, SolutionReference, Speciation, Statement};
-use crate::quantity::Dimension;
+use crate::block::piece::Piece;
+use crate::block::range::Ranged;
+use crate::block::{Context, Defaults, amount, conditions, constants, label, range, remarks, task};
+use crate::problem::{Input, InputId, Label, SolutionReference, Statement};
+use crate::quantity::Measured;
 use crate::substance::Catalogue;
 use crate::text::{Diagnostic, Rule, Span};
-use crate::yaml::{self, Keys, Limits, Scalar};
+use crate::yaml::{self, Keys, Limits};
 use std::collections::BTreeMap;
 
 /// Where each input was typed, in the block's text.
@@ -58,7 +57,7 @@ pub fn read(content: &str, context: &Context<'_>) -> Reading {
     let mut statement = None;
     if let Some(mapping) = mapping {
         let mut keys = mapping.keys();
-        label = reader.label(&mut keys);
+        label = label::read(&mut reader, &mut keys);
         statement = reader.statement(&mut keys, label.as_ref().map(|(label, _)| label.clone()));
         keys.finish(&mut reader.diagnostics);
     }
@@ -86,19 +85,31 @@ pub(super) struct Reader<'a> {
 }
 
 impl Reader<'_> {
-    /// Reads an amount as an input and remembers its place; a negative one is refused where the dimension has none.
-    pub(super) fn input<D: Dimension>(&mut self, id: InputId, scalar: &Scalar) -> Option<Input<D>> {
-        let measured = amount::read::<D>(scalar, &mut self.diagnostics)?;
-        self.places.insert(id.clone(), scalar.span());
-        if measured.value().base() < 0.0 {
-            self.error(
-                Rule::OutOfRange,
-                scalar.span(),
-                format!("{} is not negative", D::NAME),
-            );
-            return None;
+    /// Reads an amount as an input and remembers its place; what is not possible is refused.
+    pub(super) fn input<'s, D: Ranged>(
+        &mut self,
+        id: InputId,
+        piece: impl Into<Piece<'s>>,
+    ) -> Option<Input<D>> {
+        let piece = piece.into();
+        let measured = amount::read::<D>(piece, &mut self.diagnostics)?;
+        self.checked(id, piece, measured)
+    }
+
+    /// An amount that was read already, as an input.
+    pub(super) fn checked<D: Ranged>(
+        &mut self,
+        id: InputId,
+        piece: Piece<'_>,
+        measured: Measured<D>,
+    ) -> Option<Input<D>> {
+        self.places.insert(id.clone(), piece.span());
+        if measured.value().is_possible() {
+            return Some(Input::new(id, measured));
         }
-        Some(Input::new(id, measured))
+        self.diagnostics
+            .push(range::outside(piece.span(), measured));
+        None
     }
 
     /// Remembers the place of an input that was not read as a single amount.
@@ -106,8 +117,13 @@ impl Reader<'_> {
         self.places.insert(id.clone(), span);
     }
 
+    /// The place of an input that was read; the beginning of the block where none is known.
+    pub(super) fn place(&self, id: &InputId) -> Span {
+        self.places.get(id).copied().unwrap_or(Span::at(0))
+    }
+
     /// The amount of a key of the block itself, if the key is there.
-    pub(super) fn top<D: Dimension>(
+    pub(super) fn top<D: Ranged>(
         &mut self,
         keys: &mut Keys<'_>,
         key: &'static str,
@@ -117,7 +133,7 @@ impl Reader<'_> {
     }
 
     /// The amount of a key, if the key is there.
-    pub(super) fn amount<D: Dimension>(
+    pub(super) fn amount<D: Ranged>(
         &mut self,
         keys: &mut Keys<'_>,
         key: &'static str,
@@ -128,7 +144,7 @@ impl Reader<'_> {
     }
 
     /// The amount of a key that must be there.
-    pub(super) fn required<D: Dimension>(
+    pub(super) fn required<D: Ranged>(
         &mut self,
         keys: &mut Keys<'_>,
         key: &'static str,
@@ -144,33 +160,6 @@ impl Reader<'_> {
             .push(Diagnostic::error(rule, span, message));
     }
 
-    fn label(&mut self, keys: &mut Keys<'_>) -> Option<(Label, Span)> {
-        let Some(node) = keys.take("label") else {
-            if !keys.whole().is_partial() {
-                self.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::MissingLabel,
-                        keys.whole().heading(),
-                        "the block has no label",
-                    )
-                    .expecting("`label: a-name`, in lower-case letters, digits and hyphens"),
-                );
-            }
-            return None;
-        };
-        let scalar = node.as_text(&mut self.diagnostics)?;
-        match Label::new(scalar.text()) {
-            Ok(label) => Some((label, scalar.span())),
-            Err(error) => {
-                self.diagnostics.push(
-                    Diagnostic::error(Rule::BadLabel, scalar.span(), error.to_string())
-                        .helped(format!("write `label: {}`", suggested_label(scalar.text()))),
-                );
-                None
-            }
-        }
-    }
-
     fn statement(&mut self, keys: &mut Keys<'_>, label: Option<Label>) -> Option<Statement> {
         if let Some(node) = keys.take("constants") {
             constants::read(self, node);
@@ -182,7 +171,7 @@ impl Reader<'_> {
         let annotations = remarks::annotations(self, keys);
         let hand_value = remarks::hand_value(self, keys);
         let measured = remarks::measured(self, keys);
-        let problem = self.problem(keys);
+        let problem = task::read(self, keys);
         Some(Statement {
             label: label?,
             conditions: conditions?,
@@ -193,77 +182,176 @@ impl Reader<'_> {
             annotations,
         })
     }
-
-    fn problem(&mut self, keys: &mut Keys<'_>) -> Option<Problem> {
-        let Some(node) = keys.take("task") else {
-            if !keys.whole().is_partial() {
-                self.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::MissingKey,
-                        keys.whole().heading(),
-                        "the key `task` is missing",
-                    )
-                    .expecting(format!("one of {}", Problem::TASKS.join(", "))),
-                );
-            }
-            self.skip_task_keys(keys);
-            return None;
-        };
-        let scalar = node.as_text(&mut self.diagnostics)?;
-        match scalar.text() {
-            "speciation" => contents::composition(self, keys, &InputId::new("contents"), true)
-                .map(|composition| Problem::Speciation(Speciation { composition })),
-            "preparation" => {
-                preparation::read(self, keys).map(|task| Problem::Preparation(Box::new(task)))
-            }
-            "adjustment" => {
-                adjustment::read(self, keys).map(|task| Problem::Adjustment(Box::new(task)))
-            }
-            "mixing" => mixing::read(self, keys).map(Problem::Mixing),
-            "titration" => {
-                titration::read(self, keys).map(|task| Problem::Titration(Box::new(task)))
-            }
-            other => {
-                self.diagnostics.push(
-                    Diagnostic::error(
-                        Rule::UnknownTask,
-                        scalar.span(),
-                        format!("`{other}` is no task"),
-                    )
-                    .expecting(format!("one of {}", Problem::TASKS.join(", ")))
-                    .did_you_mean(other, Problem::TASKS),
-                );
-                self.skip_task_keys(keys);
-                None
-            }
-        }
-    }
-
-    /// Without a task nobody can say which of its keys belong; none is reported as unknown.
-    fn skip_task_keys(&mut self, keys: &mut Keys<'_>) {
-        for entry in super::KEYS.iter().filter(|entry| !entry.tasks.is_empty()) {
-            keys.take(entry.key);
-        }
-    }
 }
 
-/// A label that would be accepted, made of what was written.
-fn suggested_label(text: &str) -> String {
-    let mut label = String::new();
-    for c in text.chars().flat_map(char::to_lowercase) {
-        if c.is_ascii_lowercase() || c.is_ascii_digit() {
-            label.push(c);
-        } else if !label.is_empty() && !label.ends_with('-') {
-            label.push('-');
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::block::trial::{faults, one_fault, reading, statement};
+    use crate::problem::{ActivityChoice, Air, Ingredient, Origin, Problem, UncertaintyMode};
+
+    const WATER: &str = "contents: water\n";
+
+    #[test]
+    fn what_a_block_leaves_open_is_the_programs() {
+        let conditions = statement("label: a\ntask: speciation\ncontents: water\n").conditions;
+        assert_eq!(conditions.temperature.origin, Origin::Program);
+        assert!((conditions.temperature.value.value().celsius() - 25.0).abs() < 1e-12);
+        assert_eq!(conditions.activity.value, ActivityChoice::Davies);
+        assert_eq!(conditions.air.value, Air::Closed);
+        assert_eq!(conditions.uncertainty.value, UncertaintyMode::Budget);
+    }
+
+    #[test]
+    fn keys_stand_in_any_order() {
+        let one = statement(
+            "label: a\ntask: speciation\ntemperature: 4 °C\ncontents: {acid A: 1 mol/L}\nconstants: house.yaml\n",
+        );
+        let other = statement(
+            "constants: house.yaml\ncontents: {acid A: 1 mol/L}\ntemperature: 4 °C\ntask: speciation\nlabel: a\n",
+        );
+        assert_eq!(one, other);
+        assert_eq!(one.conditions.temperature.origin, Origin::Block);
+    }
+
+    #[test]
+    fn own_values_go_over_the_library() {
+        let statement = statement(
+            "label: a\ntask: speciation\ncontents: {sodium acetate: 0.1 mol/L}\nconstants:\n  - substance: acetic acid\n    pKa: 4.70\n    source: report 11-204\n  - {substance: water, pKa: 13.90, source: report 11-205}\n",
+        );
+        let Problem::Speciation(task) = &statement.problem else {
+            panic!()
+        };
+        let Some(Ingredient::Substance(content)) = task.composition.ingredients.first() else {
+            panic!()
+        };
+        let ligand = content.form.ligands().next().unwrap();
+        assert!(ligand.own);
+        assert_eq!(ligand.steps[0].preferred.pk.to_string(), "4.70");
+        assert_eq!(statement.conditions.pkw.unwrap().pk.to_string(), "13.90");
+    }
+
+    #[test]
+    fn faults_of_a_constants_file_are_told_with_their_lines() {
+        let found = faults("speciation", "contents: water\nconstants: broken.yaml\n");
+        assert_eq!(
+            (found[0].0, found[0].1.as_str()),
+            (Rule::MissingSource, "broken.yaml")
+        );
+        let text = "label: a\ntask: speciation\ncontents: water\nconstants: broken.yaml\n";
+        assert!(
+            reading(text).diagnostics[0]
+                .message()
+                .starts_with("`broken.yaml`, line 2: ")
+        );
+        one_fault(
+            "speciation",
+            "contents: water\nconstants: no.yaml\n",
+            Rule::MissingConstantsFile,
+            "no.yaml",
+            "",
+        );
+    }
+
+    #[test]
+    fn the_label_is_known_where_the_rest_is_wrong() {
+        let reading = reading("label: rb-118\ntask: mixng\n");
+        assert_eq!(reading.label.unwrap().0.as_str(), "rb-118");
+        assert_eq!(reading.statement, None);
+        assert_eq!(reading.diagnostics.len(), 1);
+        assert_eq!(
+            reading.diagnostics[0].help(),
+            Some("did you mean `mixing`?")
+        );
+    }
+
+    #[test]
+    fn a_label_that_cannot_stand_is_mended() {
+        let reading = reading("label: Rinse Bath 118\ntask: speciation\ncontents: water\n");
+        assert_eq!(reading.diagnostics[0].rule(), Rule::BadLabel);
+        assert_eq!(
+            reading.diagnostics[0].help(),
+            Some("write `label: rinse-bath-118`")
+        );
+    }
+
+    #[test]
+    fn every_fault_is_told_at_once() {
+        let found = faults(
+            "speciation",
+            "temprature: 25 °C\nactivity: davis\nair: open\nsolvent: methanol\nuncertainty: guess\nreport: {pH: x}\nhand value: {pH: 2, by: luck}\nmeasured: {limit: 7}\ncontents: {malonic acid: 1 N}\n",
+        );
+        let rules: Vec<Rule> = found.iter().map(|fault| fault.0).collect();
+        for rule in [
+            Rule::UnknownKey,
+            Rule::UnknownModel,
+            Rule::BadAir,
+            Rule::Solvent,
+            Rule::UnknownChoice,
+            Rule::BadReport,
+            Rule::BadHandValue,
+            Rule::MissingKey,
+            Rule::BadMeasured,
+            Rule::RefusedUnit,
+        ] {
+            assert_eq!(
+                rules.iter().filter(|found| **found == rule).count(),
+                1,
+                "{rule}"
+            );
         }
-        if label.len() >= Label::LONGEST {
-            break;
+        assert_eq!(rules.len(), 10);
+    }
+
+    #[test]
+    fn conditions_outside_of_what_is_known_are_refused() {
+        for (keys, rule, place, help) in [
+            (
+                "temperature: 120 °C\n",
+                Rule::BadTemperature,
+                "120 °C",
+                "100 °C",
+            ),
+            (
+                "temperature: 25 K\n",
+                Rule::BadTemperature,
+                "25 K",
+                "`25 °C`",
+            ),
+            ("temperature: 25\n", Rule::MissingUnit, "25", "°C, K"),
+            ("temperature: 77 °F\n", Rule::RefusedUnit, "°F", "°C"),
+            ("air: CO2 420\n", Rule::MissingUnit, "420", "ppm"),
+            ("air: CO2 0,05 atm\n", Rule::DecimalComma, "0,05", "0.05"),
+            (
+                "air: CO2 2000000 ppm\n",
+                Rule::BadAir,
+                "2000000 ppm",
+                "1000000",
+            ),
+            (
+                "uncertainty: {draws: 5}\n",
+                Rule::OutOfRange,
+                "{draws: 5}",
+                "from 100",
+            ),
+            (
+                "accept: everything\n",
+                Rule::UnknownChoice,
+                "everything",
+                "model outside",
+            ),
+            ("solvent: D2O\n", Rule::Solvent, "D2O", "aqueous part"),
+        ] {
+            one_fault("speciation", &format!("{WATER}{keys}"), rule, place, help);
         }
     }
-    let label = label.trim_end_matches('-');
-    if label.is_empty() {
-        "a-name".to_owned()
-    } else {
-        label.to_owned()
+
+    #[test]
+    fn a_text_that_is_no_block_has_no_statement() {
+        for text in ["", "- a\n", "label\n", "\u{0}", "label: a: b\n"] {
+            let reading = reading(text);
+            assert_eq!(reading.statement, None, "{text:?}");
+            assert!(!reading.diagnostics.is_empty(), "{text:?}");
+        }
     }
 }

@@ -1,7 +1,7 @@
 //! Solvent, reporting, annotations, hand value, reading.
 
 use crate::block::reader::Reader;
-use crate::block::{Defaults, amount};
+use crate::block::{Defaults, choice, figure};
 use crate::problem::{
     AcceptanceLimit, Annotations, HandValue, InputId, MeasuredReading, Reporting, ShortcutName,
 };
@@ -39,43 +39,11 @@ pub(super) fn reporting(
         significant_figures,
         rounding: defaults.rounding(),
     };
-    let Some(mapping) = keys.mapping("report", &mut reader.diagnostics) else {
-        return reporting;
-    };
-    let mut inner = mapping.keys();
-    for (key, words, place) in [
-        ("pH", ["decimals", "decimal"], &mut reporting.ph_decimals),
-        (
-            "amounts",
-            ["figures", "figure"],
-            &mut reporting.significant_figures,
-        ),
-    ] {
-        let Some(scalar) = inner.text(key, &mut reader.diagnostics) else {
-            continue;
-        };
-        let digits = words
-            .iter()
-            .fold(scalar.text(), |text, word| {
-                text.strip_suffix(word).unwrap_or(text)
-            })
-            .trim();
-        match digits.parse::<u8>() {
-            Ok(count) if (1..=8).contains(&count) => *place = count,
-            _ => reader.diagnostics.push(
-                Diagnostic::error(
-                    Rule::BadReport,
-                    scalar.span(),
-                    format!("`{}` is no number of digits", scalar.text()),
-                )
-                .expecting(format!(
-                    "a whole number from 1 to 8, such as `2 {}`",
-                    words[0]
-                )),
-            ),
-        }
+    if let Some(mapping) = keys.mapping("report", &mut reader.diagnostics) {
+        let (decimals, figures) = choice::report(mapping, &mut reader.diagnostics);
+        reporting.ph_decimals = decimals.unwrap_or(ph_decimals);
+        reporting.significant_figures = figures.unwrap_or(significant_figures);
     }
-    inner.finish(&mut reader.diagnostics);
     reporting
 }
 
@@ -87,15 +55,7 @@ pub(super) fn annotations(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Annot
     let notes = keys
         .text("notes", &mut reader.diagnostics)
         .map(|scalar| scalar.text().to_owned());
-    let equipment = keys.take("equipment").map_or_else(Vec::new, |node| {
-        node.items()
-            .iter()
-            .filter_map(|item| {
-                item.as_text(&mut reader.diagnostics)
-                    .map(|scalar| scalar.text().to_owned())
-            })
-            .collect()
-    });
+    let equipment = names(reader, keys, "equipment");
     Annotations {
         method,
         equipment,
@@ -113,6 +73,10 @@ pub(super) fn hand_value(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option
         .required_text("by", &mut reader.diagnostics)
         .and_then(|scalar| shortcut(reader, scalar));
     let limit = reader.amount::<Number>(&mut inner, "limit", &id);
+    if let Some(limit) = limit.as_ref().filter(|limit| limit.value().base() < 0.0) {
+        let span = reader.place(&limit.id);
+        reader.error(Rule::OutOfRange, span, "a limit is not negative");
+    }
     inner.finish(&mut reader.diagnostics);
     Some(HandValue {
         ph: ph?,
@@ -148,15 +112,7 @@ pub(super) fn measured(reader: &mut Reader<'_>, keys: &mut Keys<'_>) -> Option<M
     let id = InputId::new("measured");
     let ph = reader.required::<Number>(&mut inner, "pH", &id);
     let temperature = reader.amount::<Temperature>(&mut inner, "temperature", &id);
-    let calibration = inner.take("calibration").map_or_else(Vec::new, |node| {
-        node.items()
-            .iter()
-            .filter_map(|item| {
-                item.as_text(&mut reader.diagnostics)
-                    .map(|scalar| scalar.text().to_owned())
-            })
-            .collect()
-    });
+    let calibration = names(reader, &mut inner, "calibration");
     let limit = inner
         .text("limit", &mut reader.diagnostics)
         .and_then(|scalar| limit(reader, scalar));
@@ -240,7 +196,7 @@ pub(super) fn count(
     to: u32,
 ) -> Option<u32> {
     let scalar = keys.text(key, &mut reader.diagnostics)?;
-    let number = amount::number(scalar, &mut reader.diagnostics)?;
+    let number = figure::number(scalar, &mut reader.diagnostics)?;
     match number.to_string().parse::<u32>() {
         Ok(count) if (from..=to).contains(&count) => Some(count),
         _ => {
@@ -253,6 +209,85 @@ pub(super) fn count(
                 .expecting(format!("a whole number from {from} to {to}")),
             );
             None
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use crate::block::trial::{one_fault, statement};
+    use crate::problem::ShortcutName;
+    use crate::quantity::Dimension;
+    use crate::text::Rule;
+
+    #[test]
+    fn the_examples_of_the_language_are_read() {
+        let statement = statement(
+            "label: a\ntask: speciation\ncontents: water\nmeasured:\n  pH: 7.18 ± 0.02 (k=2)\n  temperature: 24.6 °C\n  calibration: [phthalate 4.005, phosphate 6.865, slope 99.1 %]\n  limit: 7.20 ± 0.05\nhand value:\n  pH: -0.15\n  by: x neglected\n  limit: 0.02\nreport: {pH: 3 decimals, amounts: 1 figure}\nmethod: SOP-114 rev 3\nequipment: [balance B-04, pipette P-2]\n",
+        );
+        let measured = statement.measured.unwrap();
+        assert!((measured.ph.measured.standard_uncertainty() - 0.01).abs() < 1e-15);
+        assert_eq!(measured.calibration.len(), 3);
+        assert!((measured.limit.unwrap().half_width.base() - 0.05).abs() < 1e-15);
+        let hand = statement.hand_value.unwrap();
+        assert_eq!(hand.by, ShortcutName::XNeglected);
+        assert!(hand.ph.value().base() < 0.0);
+        assert_eq!(statement.reporting.ph_decimals, 3);
+        assert_eq!(statement.reporting.significant_figures, 1);
+        assert_eq!(
+            statement.annotations.equipment,
+            ["balance B-04", "pipette P-2"]
+        );
+    }
+
+    #[test]
+    fn faults_of_remarks() {
+        for (keys, rule, place, help) in [
+            ("hand value: 2.15\n", Rule::NotAMapping, "2.15", ""),
+            (
+                "hand value: {pH: 2.15}\n",
+                Rule::MissingKey,
+                "hand value",
+                "`by: ...`",
+            ),
+            (
+                "hand value: {pH: 2.15, by: x neglectd}\n",
+                Rule::BadHandValue,
+                "x neglectd",
+                "`x neglected`",
+            ),
+            (
+                "hand value: {pH: 2.15, by: ampholyte, limit: -0.1}\n",
+                Rule::OutOfRange,
+                "-0.1",
+                "",
+            ),
+            (
+                "measured: {pH: 7.1 ± 0.02}\n",
+                Rule::BadUncertainty,
+                "± 0.02",
+                "(k=2)",
+            ),
+            (
+                "measured: {pH: 7.1, limit: 7.3 to 7.1}\n",
+                Rule::BadMeasured,
+                "7.3 to 7.1",
+                "",
+            ),
+            (
+                "report: {pH: 2, colour: 3}\n",
+                Rule::UnknownKey,
+                "colour",
+                "`pH`",
+            ),
+        ] {
+            one_fault(
+                "speciation",
+                &format!("contents: water\n{keys}"),
+                rule,
+                place,
+                help,
+            );
         }
     }
 }

@@ -1,30 +1,27 @@
 //! What a buffer is made from and what is added: solids, stocks, other blocks' solutions.
 
-use crate::block::contents;
+use crate::block::outline::reference;
 use crate::block::reader::Reader;
-use crate::problem::{Input, InputId, SolutionPortion, Source, SourceKind, Trace};
-use crate::quantity::{Decimal, Density, Measured, Unit, Volume};
-use crate::text::Rule;
+use crate::block::{certificate, origin, stock};
+use crate::problem::{
+    Corrections, Input, InputId, SolutionPortion, Source, SourceKind, Strength, Trace,
+};
+use crate::quantity::{Decimal, Measured, Unit, Volume};
+use crate::substance::Form;
+use crate::text::{Diagnostic, Rule, Span};
 use crate::yaml::{Keys, Node, Value};
 
 /// A source as a name alone, or with its keys.
 pub(super) fn read(reader: &mut Reader<'_>, node: &Node, id: &InputId) -> Option<Source> {
     match &node.value {
         Value::Text(scalar) => {
-            let form = contents::substance(reader, scalar)?;
-            if form.formula.is_none() {
-                reader.error(
-                    Rule::NotASolid,
-                    scalar.span(),
-                    format!("{} has no formula here and cannot be weighed", form.name),
-                );
-                return None;
-            }
+            let form = origin::substance(reader, scalar)?;
+            solid(reader, &form, scalar.span())?;
             Some(Source {
                 id: id.renamed(&form.name),
                 kind: SourceKind::Solid {
                     form,
-                    corrections: crate::problem::Corrections::default(),
+                    corrections: Corrections::default(),
                 },
                 trace: Trace::default(),
             })
@@ -44,43 +41,66 @@ pub(super) fn read(reader: &mut Reader<'_>, node: &Node, id: &InputId) -> Option
 
 fn keyed(reader: &mut Reader<'_>, keys: &mut Keys<'_>, id: &InputId) -> Option<Source> {
     if let Some(scalar) = keys.text("solution", &mut reader.diagnostics) {
-        let composition = contents::solution(reader, scalar)?;
+        let composition = origin::solution(reader, scalar)?;
         let volume = Measured::<Volume>::new(Decimal::whole(1), Unit::Litre)?;
         return Some(Source {
             id: id.renamed(scalar.text()),
             kind: SourceKind::Solution(SolutionPortion {
                 volume: Input::new(id.within("volume"), volume),
-                reference: Some(super::outline::reference(scalar.text())),
+                reference: Some(reference(scalar.text())),
                 composition,
             }),
             trace: Trace::default(),
         });
     }
     let name = keys.required_text("substance", &mut reader.diagnostics);
-    let form = name.and_then(|name| contents::substance(reader, name));
+    let form = name.and_then(|name| origin::substance(reader, name));
     let id = form
         .as_ref()
         .map_or_else(|| id.clone(), |form| id.renamed(&form.name));
-    let corrections = contents::corrections(reader, keys, &id);
-    let trace = contents::trace(reader, keys);
-    let density = reader.amount::<Density>(keys, "density", &id);
-    let strength = keys.text("concentration", &mut reader.diagnostics);
-    let form = form?;
-    let kind = match strength {
-        Some(scalar) => SourceKind::Stock {
-            strength: contents::strength(reader, &form, scalar, density, &id)?,
-            form,
-            corrections,
-        },
-        None if form.formula.is_none() => {
-            reader.error(
-                Rule::NotASolid,
-                keys.whole().heading(),
-                format!("{} has no formula here and cannot be weighed", form.name),
-            );
+    let corrections = certificate::corrections(reader, keys, &id);
+    let trace = certificate::trace(reader, keys);
+    let density = keys.text("density", &mut reader.diagnostics);
+    let concentration = keys.text("concentration", &mut reader.diagnostics);
+    certificate::idle_corrections(reader, &corrections, concentration.is_none());
+    let kind = if let Some(scalar) = concentration {
+        let strength = stock::strength(reader, form.as_deref(), scalar, density, &id)?;
+        if matches!(&strength, Strength::MassFraction { density: None, .. }) {
+            stock::density_needed(reader, scalar.span());
             return None;
         }
-        None => SourceKind::Solid { form, corrections },
+        SourceKind::Stock {
+            form: form?,
+            strength,
+            corrections,
+        }
+    } else {
+        if let Some(density) = density {
+            reader.error(
+                Rule::ConflictingKeys,
+                density.span(),
+                "a density has no bearing on a solid; state the `concentration` of the stock",
+            );
+        }
+        let form = form?;
+        solid(reader, &form, keys.whole().heading())?;
+        SourceKind::Solid { form, corrections }
     };
     Some(Source { id, kind, trace })
+}
+
+/// A solid is weighed, which needs its formula.
+fn solid(reader: &mut Reader<'_>, form: &Form, span: Span) -> Option<()> {
+    if form.formula.is_some() {
+        return Some(());
+    }
+    reader.diagnostics.push(
+        Diagnostic::error(
+            Rule::NotASolid,
+            span,
+            format!("{} has no formula here and cannot be weighed", form.name),
+        )
+        .expecting("`formula: ...` with the own constants, or the `concentration` of a stock"),
+    );
+    None
 }

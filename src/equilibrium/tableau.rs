@@ -53,8 +53,15 @@ impl Species {
 pub struct ComponentIndex(pub(super) usize);
 
 /// A species of a system.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord)]
 pub struct SpeciesIndex(pub(super) usize);
+
+impl ComponentIndex {
+    /// Its place among the components, from 0.
+    pub fn place(self) -> usize {
+        self.0
+    }
+}
 
 impl SpeciesIndex {
     /// Its place among the species, from 0.

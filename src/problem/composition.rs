@@ -2,10 +2,11 @@
 
 use crate::problem::{Input, InputId};
 use crate::quantity::{
-    Amount, AmountConcentration, Density, Dimension, Mass, MassConcentration, MassFraction,
-    Molality, Number, Volume,
+    Amount, AmountConcentration, Density, Mass, MassConcentration, MassFraction, Molality, Number,
+    Volume,
 };
 use crate::substance::Form;
+use std::fmt;
 use std::sync::Arc;
 
 /// What a liquid was made of.
@@ -27,52 +28,88 @@ impl Composition {
     }
 
     /// The same liquid as another block sees it: every input carries the block's name in front.
+    ///
+    /// What that block took from a third one keeps the third one's name, with the page where that is another, so that a
+    /// quantity that enters by two ways is known as one.
     #[must_use]
-    pub fn seen_from(&self, reference: &str) -> Self {
+    pub fn seen_from(&self, reference: &SolutionReference) -> Self {
+        let name = reference.to_string();
         let mut seen = self.clone();
-        if let MadeUp::To(volume) = &mut seen.made_up {
-            volume.id = volume.id.seen_from(reference);
-        }
-        for ingredient in &mut seen.ingredients {
-            match ingredient {
-                Ingredient::Substance(content) => content.rename(reference),
-                Ingredient::Solution(portion) => {
-                    portion.volume.id = portion.volume.id.seen_from(reference);
-                    if portion.reference.is_none() {
-                        portion.composition = Arc::new(portion.composition.seen_from(reference));
-                    }
-                }
-                Ingredient::Water(volume) => volume.id = volume.id.seen_from(reference),
-            }
+        seen.each_id(&mut |id| *id = id.seen_from(&name));
+        if let Some(page) = &reference.page {
+            seen.each_portion(&mut |portion| portion.take_to_page(page));
         }
         seen
+    }
+
+    /// Every identity but those that come from other blocks.
+    fn each_id(&mut self, change: &mut impl FnMut(&mut InputId)) {
+        if let MadeUp::To(volume) = &mut self.made_up {
+            change(&mut volume.id);
+        }
+        for ingredient in &mut self.ingredients {
+            match ingredient {
+                Ingredient::Substance(content) => content.each_id(change),
+                Ingredient::Solution(portion) => {
+                    change(&mut portion.volume.id);
+                    if portion.reference.is_none() {
+                        Arc::make_mut(&mut portion.composition).each_id(change);
+                    }
+                }
+                Ingredient::Water(volume) => change(&mut volume.id),
+            }
+        }
+    }
+
+    /// Every portion that comes from another block, but not what lies in it.
+    fn each_portion(&mut self, change: &mut impl FnMut(&mut SolutionPortion)) {
+        for ingredient in &mut self.ingredients {
+            if let Ingredient::Solution(portion) = ingredient {
+                if portion.reference.is_some() {
+                    change(portion);
+                } else {
+                    Arc::make_mut(&mut portion.composition).each_portion(change);
+                }
+            }
+        }
+    }
+}
+
+impl SolutionPortion {
+    /// Names the page of a block that was named without one.
+    fn take_to_page(&mut self, page: &str) {
+        if let Some(reference) = &mut self.reference
+            && reference.page.is_none()
+        {
+            reference.page = Some(page.to_owned());
+        }
+        let inside = Arc::make_mut(&mut self.composition);
+        inside.each_id(&mut |id| *id = id.on_page(page));
+        inside.each_portion(&mut |portion| portion.take_to_page(page));
     }
 }
 
 impl Content {
-    fn rename(&mut self, reference: &str) {
-        fn seen<D: Dimension>(input: &mut Input<D>, reference: &str) {
-            input.id = input.id.seen_from(reference);
-        }
-        self.id = self.id.seen_from(reference);
+    fn each_id(&mut self, change: &mut impl FnMut(&mut InputId)) {
+        change(&mut self.id);
         match &mut self.amount {
-            ContentAmount::Concentration(input) => seen(input, reference),
-            ContentAmount::Molality(input) => seen(input, reference),
-            ContentAmount::MassConcentration(input) => seen(input, reference),
-            ContentAmount::Mass(input) => seen(input, reference),
-            ContentAmount::Amount(input) => seen(input, reference),
+            ContentAmount::Concentration(input) => change(&mut input.id),
+            ContentAmount::Molality(input) => change(&mut input.id),
+            ContentAmount::MassConcentration(input) => change(&mut input.id),
+            ContentAmount::Mass(input) => change(&mut input.id),
+            ContentAmount::Amount(input) => change(&mut input.id),
             ContentAmount::Stock { taken, strength } => {
                 match taken {
-                    Taken::Volume(input) => seen(input, reference),
-                    Taken::Mass(input) => seen(input, reference),
+                    Taken::Volume(input) => change(&mut input.id),
+                    Taken::Mass(input) => change(&mut input.id),
                 }
                 match strength {
-                    Strength::Concentration(input) => seen(input, reference),
-                    Strength::MassConcentration(input) => seen(input, reference),
+                    Strength::Concentration(input) => change(&mut input.id),
+                    Strength::MassConcentration(input) => change(&mut input.id),
                     Strength::MassFraction { fraction, density } => {
-                        seen(fraction, reference);
+                        change(&mut fraction.id);
                         if let Some(density) = density {
-                            seen(density, reference);
+                            change(&mut density.id);
                         }
                     }
                 }
@@ -84,10 +121,10 @@ impl Content {
             factor,
         } = &mut self.corrections;
         for input in [purity, water].into_iter().flatten() {
-            seen(input, reference);
+            change(&mut input.id);
         }
         if let Some(input) = factor {
-            seen(input, reference);
+            change(&mut input.id);
         }
     }
 }
@@ -132,6 +169,16 @@ pub struct SolutionReference {
     pub page: Option<String>,
     /// The block's label.
     pub label: String,
+}
+
+impl fmt::Display for SolutionReference {
+    /// `label`, or `page.md#label`.
+    fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match &self.page {
+            Some(page) => write!(formatter, "{page}#{}", self.label),
+            None => formatter.write_str(&self.label),
+        }
+    }
 }
 
 /// One substance and how much of it went in.

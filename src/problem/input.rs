@@ -44,6 +44,15 @@ impl InputId {
         Self(format!("{reference} : {}", self.0))
     }
 
+    /// The identity as seen from another page: a block that is named without a page is one of `page`.
+    #[must_use]
+    pub(super) fn on_page(&self, page: &str) -> Self {
+        match self.0.split_once(" : ") {
+            Some((block, _)) if !block.contains('#') => Self(format!("{page}#{}", self.0)),
+            _ => self.clone(),
+        }
+    }
+
     /// The path, for people and machines alike.
     pub fn as_str(&self) -> &str {
         &self.0

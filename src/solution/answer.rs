@@ -2,7 +2,7 @@
 
 use crate::equilibrium::Certificate;
 use crate::problem::{ActivityChoice, Composition, InputId, ShortcutName};
-use crate::substance::{Form, InertIon, Ligand};
+use crate::substance::{Constant, Form, InertIon, Ligand};
 use std::sync::Arc;
 
 /// The whole answer to one statement.
@@ -124,7 +124,7 @@ pub struct ComponentTotal {
     pub concentration: f64,
 }
 
-/// Shares of species and buffer capacity over a range of pH, at the activity coefficients of the state.
+/// Shares of species and buffer capacity over a range of pH, at the ionic strength of the state.
 #[derive(Clone, Debug, Default)]
 pub struct Distribution {
     /// The pH of each point, increasing.
@@ -478,6 +478,8 @@ pub struct Comparison {
 /// Everything that is needed to compute an answer again without a library.
 #[derive(Clone, Debug, Default)]
 pub struct ConstantsUsed {
+    /// The user's own pKw, where one was stated.
+    pub water: Option<Constant>,
     /// The ligands with their constants.
     pub ligands: Vec<Arc<Ligand>>,
     /// The inert ions.

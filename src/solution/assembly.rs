@@ -322,7 +322,7 @@ impl Assembly {
     /// Derivative of pH with respect to each variable in base units, and the sensitivities that it comes from.
     pub(super) fn gradient(&self, solved: &Solved) -> (Vec<f64>, Sensitivities) {
         let sensitivities = solved.certified.sensitivities(&self.system);
-        let density = self.density;
+        let density = solved.worked.at(self.recipe.density).to_f64();
         let mut weights: Vec<(Node, f64)> = self
             .parts
             .iter()

@@ -90,19 +90,18 @@ pub(super) fn list(
         air(bench, surroundings, &cost),
     ];
     list.extend(molality(assembly, &cost));
-    if let Some(pressure) = assembly.setting.carbon_dioxide {
-        if matches!(
-            bench.statement.conditions.air.value,
-            Air::CarbonDioxideFraction(_)
-        ) {
-            let lower = assembly.setting.with_carbon_dioxide(Some(pressure * 0.97));
-            list.push(cost(
+    let open = matches!(
+        bench.statement.conditions.air.value,
+        Air::CarbonDioxideFraction(_)
+    );
+    if let Some(pressure) = assembly.setting.carbon_dioxide.filter(|_| open) {
+        let lower = assembly.setting.with_carbon_dioxide(Some(pressure * 0.97));
+        list.push(cost(
                 "The mole fraction of CO₂ is taken at one standard atmosphere, without the water vapour's share."
                     .to_owned(),
                 "at a pressure lower by 3 %",
                 assembly.under(&lower)?.stated_ph().ok(),
             ));
-        }
     }
     list.extend(constants_temperature(assembly, &cost));
     list.extend(conditional(assembly, &cost));

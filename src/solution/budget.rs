@@ -1,11 +1,12 @@
 //! The uncertainty budget of a pH, from exact derivatives.
 
 use crate::problem::InputId;
-use crate::quantity::Decimal;
 use crate::solution::answer::{Budget, BudgetLine};
 use crate::solution::assembly::{Assembly, Solved};
 use crate::solution::assumption::Surroundings;
 use crate::solution::conclusion::Bench;
+use crate::solution::recipe::Distribution;
+use crate::solution::simulation::Added;
 
 /// One quantity that a result depends on, with its uncertainty.
 #[derive(Clone, Debug)]
@@ -32,7 +33,7 @@ impl Budget {
     /// The budget of independent contributions, with coverage factor `k`; standard and expanded uncertainty in the unit of the result.
     ///
     /// Source: JCGM 100:2008, 5.1.2 and, for the effective degrees of freedom, G.4.1 (Welch-Satterthwaite); recalled.
-    pub fn of(contributions: Vec<Contribution>, k: f64) -> Self {
+    pub fn of(contributions: &[Contribution], k: f64) -> Self {
         let part = |line: &Contribution| line.standard * line.sensitivity;
         let variance: f64 = contributions
             .iter()
@@ -89,7 +90,7 @@ pub(super) fn of(
     surroundings: &Surroundings,
 ) -> Budget {
     Budget::of(
-        contributions(bench, assembly, solved, surroundings),
+        &contributions(bench, assembly, solved, surroundings),
         COVERAGE_FACTOR,
     )
 }
@@ -120,10 +121,7 @@ pub(super) fn contributions(
         })
         .collect();
     for pk in &assembly.pks {
-        let constant = pk.ligand.steps.get(pk.step).map(|step| &step.preferred);
-        let standard = constant
-            .and_then(|constant| constant.uncertainty)
-            .map_or(0.0, Decimal::to_f64);
+        let standard = Assembly::pk_standard(pk);
         if standard > 0.0 {
             lines.push(Contribution {
                 what: format!("pK{} of {}", pk.step + 1, pk.ligand.name),
@@ -154,6 +152,32 @@ pub(super) fn contributions(
     lines.extend(model_lines(bench, solved, surroundings));
     lines
 }
+
+/// What a simulation adds to the pH of each draw: temperature and model, which no input of the recipe carries.
+pub(super) fn added(bench: &Bench<'_>, solved: &Solved, surroundings: &Surroundings) -> Vec<Added> {
+    let temperature = &bench.statement.conditions.temperature.value.measured;
+    let mut added = vec![Added {
+        standard: temperature.standard_uncertainty() * surroundings.ph_per_kelvin,
+        distribution: Distribution::Normal,
+    }];
+    added.extend(
+        model_lines(bench, solved, surroundings)
+            .into_iter()
+            .map(|line| Added {
+                standard: line.standard,
+                distribution: if line.origin == MODEL {
+                    Distribution::Normal
+                } else {
+                    Distribution::Rectangular
+                },
+            }),
+    );
+    added.retain(|added| added.standard.abs() > 0.0);
+    added
+}
+
+/// Where the model's own error comes from, in a budget.
+const MODEL: &str = "model";
 
 /// Standard uncertainty in pH of the models against the primary pH standards at I up to 0.1 mol/kg: at 25 °C, and over 0 to 50 °C.
 ///
@@ -195,7 +219,7 @@ fn model_lines(
         "activity model and constants against the primary pH standards".to_owned(),
         bench.chosen.choice.name().to_owned(),
         standard,
-        "model",
+        MODEL,
     )];
     let (second, ph) = &surroundings.second_model;
     let difference = (ph - solved.certified.ph()).abs();
@@ -243,7 +267,7 @@ mod tests {
         let length = 50_000_623.0;
         let third = 3.0_f64.sqrt();
         let budget = Budget::of(
-            vec![
+            &[
                 line(length, 25.0, 1.0, Some(18.0)),
                 line(215.0, 5.8, 1.0, Some(24.0)),
                 line(0.0, 3.9, 1.0, Some(5.0)),
@@ -261,11 +285,11 @@ mod tests {
 
     /// Relative contributions of a product: value times relative uncertainty.
     fn product(value: f64, parts: &[(f64, f64)]) -> Budget {
-        let lines = parts
+        let lines: Vec<Contribution> = parts
             .iter()
             .map(|(figure, standard)| line(*figure, *standard, value / figure, None))
             .collect();
-        Budget::of(lines, 2.0)
+        Budget::of(&lines, 2.0)
     }
 
     #[test]

@@ -3,11 +3,14 @@
 use crate::problem::{Composition, Ingredient, InputId, Statement, UncertaintyMode};
 use crate::solution::Unsolvable;
 use crate::solution::answer::{Answer, ConstantsUsed, ModelFacts, Outcome};
-use crate::solution::assembly::{Assembly, CARBONIC_ACID, Setting, Solved};
+use crate::solution::assembly::{Assembly, CARBONIC_ACID, Setting};
 use crate::solution::model_choice::{ChosenModel, choose, within_range};
 use crate::solution::recipe::{Recipe, Writer};
 use crate::solution::speciation::state;
-use crate::solution::{assumption, budget, carbon_dioxide, caution, distribution, polyborate};
+use crate::solution::{
+    assumption, budget, carbon_dioxide, caution, comparison, distribution, polyborate, shortcut,
+    simulation,
+};
 use crate::substance::Component;
 use std::sync::Arc;
 
@@ -79,15 +82,28 @@ impl<'a> Bench<'a> {
                 Some(budget::of(self, &assembly, &solved, &surroundings))
             }
         };
+        let simulation = match self.statement.conditions.uncertainty.value {
+            UncertaintyMode::Simulation { draws, seed } => {
+                let added = budget::added(self, &solved, &surroundings);
+                Some(simulation::simulate(
+                    &assembly, &solved, &added, draws, seed,
+                )?)
+            }
+            UncertaintyMode::None | UncertaintyMode::Budget => None,
+        };
+        let (shortcuts, hand_value) = shortcut::tested(self, &assembly, &solved);
         Ok(Answer {
             model: self.model_facts(&assembly),
-            distribution: distribution::over_ph(&assembly, &solved, &state),
+            simulation,
+            shortcuts,
+            hand_value,
+            comparison: comparison::of(self, &assembly, &solved, &surroundings),
             budget,
-            simulation: None,
-            shortcuts: Vec::new(),
-            hand_value: None,
-            comparison: None,
-            constants: constants(&assembly),
+            distribution: distribution::over_ph(&assembly, &solved, &state),
+            constants: ConstantsUsed {
+                water: self.statement.conditions.pkw.clone(),
+                ..constants(&assembly)
+            },
             assumptions: assumption::list(self, &assembly, &surroundings, &liquid)?,
             cautions: caution::list(self, &assembly, &state, &surroundings, &liquid),
             liquid,
@@ -165,9 +181,4 @@ fn constants(assembly: &Assembly) -> ConstantsUsed {
         .map(|pk| (pk.ligand.name.clone(), pk.step + 1, pk.found.value))
         .collect();
     used
-}
-
-/// A solution that is only looked at: the pH of an assembly at its stated values.
-pub(super) fn solved(assembly: &Assembly) -> Result<Solved, Unsolvable> {
-    assembly.solve(&assembly.stated())
 }

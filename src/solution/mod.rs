@@ -4,20 +4,29 @@
 //! comes from a certified equilibrium. Knows no Markdown, no text positions, no files; its only randomness is a named generator with a stated
 //! seed.
 
+mod adjustment;
 pub mod answer;
 mod assembly;
 mod assumption;
 mod budget;
+mod buffer_suggestion;
 mod carbon_dioxide;
 mod caution;
+mod comparison;
 mod composition;
 mod conclusion;
 mod dissociation;
 mod distribution;
+mod hand;
 mod mixing;
 mod model_choice;
 mod polyborate;
+mod preparation;
 mod recipe;
+mod search;
+mod shortcut;
+mod simulation;
+mod source;
 mod speciation;
 #[cfg(test)]
 mod specimen;
@@ -40,7 +49,9 @@ pub fn solve(statement: &Statement) -> Result<Answer, Unsolvable> {
     match &statement.problem {
         Problem::Speciation(task) => mixing::solution(&bench, &task.composition),
         Problem::Mixing(task) => mixing::mixture(&bench, task),
-        _ => Err(Unsolvable::Fit {
+        Problem::Preparation(task) => preparation::prepared(&bench, task),
+        Problem::Adjustment(task) => adjustment::adjusted(&bench, task),
+        Problem::Titration(_) => Err(Unsolvable::Fit {
             reason: String::new(),
         }),
     }

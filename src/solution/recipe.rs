@@ -191,22 +191,6 @@ impl Writer {
         (index, node)
     }
 
-    /// A quantity that is sought or moved, in base units: an addition, a volume of titrant.
-    pub(super) fn free(&mut self, what: &str, value: f64) -> (VariableIndex, Node) {
-        self.variable(Variable {
-            what: what.to_owned(),
-            input: None,
-            written: String::new(),
-            value: Total::from_f64(value),
-            standard: 0.0,
-            degrees_of_freedom: None,
-            distribution: Distribution::Normal,
-            base_per_unit: 1.0,
-            unit: String::new(),
-            origin: "sought",
-        })
-    }
-
     /// Liquids poured together and made up to `total` litres.
     pub(super) fn pour(&mut self, portions: &[(&Liquid, Node)], total: Node) -> Liquid {
         let mut contents = Vec::new();

@@ -111,3 +111,20 @@ pub(super) fn stated<T>(value: T) -> Stated<T> {
 pub(super) fn speciation(composition: Composition, celsius: &str) -> Statement {
     statement(Problem::Speciation(Speciation { composition }), celsius)
 }
+
+/// A phosphate buffer with uncertain mass, volume and purity.
+pub(super) fn buffer_with_uncertainty() -> Composition {
+    Composition {
+        made_up: MadeUp::To(uncertain("volume", "1.000", "0.002", Unit::Litre)),
+        ingredients: vec![
+            content(
+                "sodium dihydrogen phosphate dihydrate",
+                ContentAmount::Mass(uncertain("acid mass", "3.9003", "0.05", Unit::Gram)),
+            ),
+            content(
+                "disodium hydrogen phosphate",
+                ContentAmount::Mass(uncertain("base mass", "3.549", "0.05", Unit::Gram)),
+            ),
+        ],
+    }
+}

@@ -49,6 +49,11 @@ impl Tape {
         (VariableIndex(index), self.push(Step::Variable(index)))
     }
 
+    /// The variable at a place, as counted from 0.
+    pub(super) fn index_of(&self, place: usize) -> VariableIndex {
+        VariableIndex(place.min(self.variables))
+    }
+
     /// a + b.
     pub(super) fn add(&mut self, a: Node, b: Node) -> Node {
         self.push(Step::Add(a, b))

@@ -108,6 +108,12 @@ pub enum Unsolvable {
         /// The source or target it is about.
         input: InputId,
     },
+    /// Too few draws were asked for.
+    #[error("a simulation of {draws} draws tells nothing; ask for at least 1000")]
+    Simulation {
+        /// Number of draws.
+        draws: u32,
+    },
     /// The readings cannot determine what was asked.
     #[error("the readings cannot be fitted: {reason}")]
     Fit {
@@ -134,6 +140,7 @@ impl Unsolvable {
             | Self::Library(_)
             | Self::ModelLacksCoefficients { .. }
             | Self::BeyondModel { .. }
+            | Self::Simulation { .. }
             | Self::Fit { .. } => None,
         }
     }

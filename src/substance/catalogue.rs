@@ -196,6 +196,13 @@ impl Catalogue {
         if stored.states.len() == ligand.states.len() {
             ligand.states.clone_from(&stored.states);
         }
+        if !stored.ion_sizes.is_empty() {
+            let own = StoredSubstance {
+                charge: Some(known.charge),
+                ..stored.clone()
+            };
+            ligand.ion_sizes = own.ligand(true)?.ion_sizes;
+        }
         self.ligands.insert(ligand.name.clone(), Arc::new(ligand));
         Ok(())
     }
