@@ -346,6 +346,7 @@ mod tests {
                     let name = element.trim_start_matches('/');
                     let known = [
                         "svg", "title", "desc", "rect", "line", "text", "polyline", "circle",
+                        "clipPath", "g",
                     ];
                     assert!(
                         known.iter().any(|known| name.starts_with(known)),

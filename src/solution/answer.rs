@@ -20,7 +20,7 @@ pub struct Answer {
     pub state: State,
     /// What the task asked for besides.
     pub outcome: Outcome,
-    /// Shares of the species over a range of pH; `None` where no component has more than one dissociation step.
+    /// Shares of the species over a range of pH; `None` where no component has more than one dissociation step or polynuclear species.
     pub distribution: Option<Distribution>,
     /// Uncertainty budget of the pH (of the headline quantity where the task has another).
     pub budget: Option<Budget>,

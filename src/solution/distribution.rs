@@ -11,7 +11,7 @@ const TENTHS: std::ops::RangeInclusive<u8> = 0..=140;
 /// Half the pH difference over which the buffer capacity is taken.
 const HALF_STEP: f64 = 0.01;
 
-/// The distribution of the species of every ligand with more than one step; `None` where there is no such ligand.
+/// The distribution of the species of every ligand with more than one step or with polynuclear species; `None` where there is no such ligand.
 pub(super) fn over_ph(assembly: &Assembly, solved: &Solved, state: &State) -> Option<Distribution> {
     let rows: Vec<&SpeciesRow> = assembly
         .species
@@ -50,7 +50,12 @@ pub(super) fn over_ph(assembly: &Assembly, solved: &Solved, state: &State) -> Op
     Some(distribution)
 }
 
+/// Whether one pK does not say all: a ligand of more than one step, or with polynuclear species.
 fn has_steps(assembly: &Assembly, part: usize) -> bool {
+    let mut own = assembly.species.iter().filter(|row| row.part == part);
+    if own.any(|row| row.nuclearity > 1) {
+        return true;
+    }
     assembly
         .parts
         .get(part)

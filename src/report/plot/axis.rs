@@ -85,6 +85,15 @@ impl Range {
         }
     }
 
+    /// The same without the ends: below 0 and above 1 outside the range, as far as three times its width.
+    pub(super) fn share_beyond(self, value: f64) -> f64 {
+        if self.high > self.low {
+            ((value - self.low) / (self.high - self.low)).clamp(-3.0, 4.0)
+        } else {
+            0.5
+        }
+    }
+
     pub(super) fn contains(self, value: f64) -> bool {
         value >= self.low && value <= self.high
     }

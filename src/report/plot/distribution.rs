@@ -83,7 +83,7 @@ fn shares(ligand: &str, distribution: &Distribution) -> Option<Panel> {
         label: format!("share of {}", shortened(ligand)),
         range: Range {
             low: 0.0,
-            high: 1.1,
+            high: 1.15,
         },
         ticks: 6,
         curves,

@@ -69,6 +69,11 @@ impl Frame {
         self.top + self.height * (1.0 - self.upright.share(value))
     }
 
+    /// The same for a point that may lie outside the frame.
+    fn y_beyond(self, value: f64) -> f64 {
+        self.top + self.height * (1.0 - self.upright.share_beyond(value))
+    }
+
     fn bottom(self) -> f64 {
         self.top + self.height
     }
@@ -107,9 +112,7 @@ impl Panel {
             let beside = if y - frame.top < 18.0 { 14.0 } else { -4.0 };
             push(svg, &text(frame.right() - 4.0, y + beside, "end", name));
         }
-        for curve in &self.curves {
-            draw_curve(curve, frame, svg);
-        }
+        self.draw_curves(frame, svg);
         for (x, y) in &self.dots {
             push(
                 svg,
@@ -120,9 +123,7 @@ impl Panel {
                 ),
             );
         }
-        for curve in &self.curves {
-            draw_name(curve, frame, svg);
-        }
+        draw_names(&self.curves, frame, svg);
     }
 
     fn draw_axis(&self, frame: Frame, svg: &mut String) {
@@ -161,6 +162,31 @@ impl Panel {
     }
 }
 
+impl Panel {
+    /// The curves, cut off at the frame.
+    fn draw_curves(&self, frame: Frame, svg: &mut String) {
+        if self.curves.is_empty() {
+            return;
+        }
+        let id = format!("frame-{}", pixels(frame.top));
+        push(
+            svg,
+            &format!(
+                "<clipPath id=\"{id}\"><rect x=\"{}\" y=\"{}\" width=\"{}\" height=\"{}\"/></clipPath>",
+                pixels(frame.left),
+                pixels(frame.top),
+                pixels(frame.width),
+                pixels(frame.height)
+            ),
+        );
+        push(svg, &format!("<g clip-path=\"url(#{id})\">"));
+        for curve in &self.curves {
+            draw_curve(curve, frame, svg);
+        }
+        push(svg, "</g>");
+    }
+}
+
 fn draw_curve(curve: &Curve, frame: Frame, svg: &mut String) {
     let (colour, dashes) = style(curve.style);
     let mut points = String::new();
@@ -174,7 +200,7 @@ fn draw_curve(curve: &Curve, frame: Frame, svg: &mut String) {
         }
         points.push_str(&pixels(frame.x(*x)));
         points.push(',');
-        points.push_str(&pixels(frame.y(*y)));
+        points.push_str(&pixels(frame.y_beyond(*y)));
     }
     let dashes = if dashes.is_empty() {
         String::new()
@@ -189,30 +215,71 @@ fn draw_curve(curve: &Curve, frame: Frame, svg: &mut String) {
     );
 }
 
-/// The name of a curve, above its point, kept inside the frame, in the colour of the curve on a white edge.
-fn draw_name(curve: &Curve, frame: Frame, svg: &mut String) {
-    let Some((name, (x, y))) = &curve.name else {
-        return;
-    };
-    let (colour, _) = style(curve.style);
-    let share = frame.across.share(*x);
-    let (anchor, aside) = if share < 0.12 {
-        ("start", 6.0)
-    } else if share > 0.88 {
-        ("end", -6.0)
-    } else {
-        ("middle", 0.0)
-    };
-    let y = (frame.y(*y) - 7.0).max(frame.top + 15.0);
-    push(
-        svg,
-        &format!(
-            "<text x=\"{}\" y=\"{}\" text-anchor=\"{anchor}\" fill=\"{colour}\" stroke=\"#fff\" stroke-width=\"4\" stroke-linejoin=\"round\" paint-order=\"stroke\">{}</text>",
-            pixels(frame.x(*x) + aside),
-            pixels(y),
-            escape::xml(name)
-        ),
-    );
+/// Where the name of a curve stands.
+#[derive(Clone, Copy, Debug)]
+struct Place {
+    x: f64,
+    y: f64,
+    anchor: &'static str,
+    /// Left and right end of the text, estimated.
+    ends: (f64, f64),
+}
+
+/// Height of a line of text, and the estimated width of a character, in pixels.
+const LINE: f64 = 15.0;
+const CHARACTER: f64 = 7.6;
+
+impl Place {
+    /// A place for a name near the point of its curve: above it, higher, or below the curve, where no earlier name stands.
+    fn of(name: &str, (x, y): (f64, f64), frame: Frame, taken: &[Self]) -> Self {
+        let characters = u32::try_from(name.chars().count()).unwrap_or(0);
+        let width = CHARACTER * f64::from(characters);
+        let x = frame.x(x);
+        let (left, right) = (frame.left + 4.0, frame.right() - 4.0);
+        let (anchor, x, ends) = if x - width / 2.0 < left {
+            ("start", left, (left, left + width))
+        } else if x + width / 2.0 > right {
+            ("end", right, (right - width, right))
+        } else {
+            ("middle", x, (x - width / 2.0, x + width / 2.0))
+        };
+        let above = (frame.y(y) - 7.0).max(frame.top + 14.0);
+        let free = |y: &f64| {
+            let apart = |other: &Self| {
+                (other.y - y).abs() >= LINE || other.ends.1 < ends.0 || ends.1 < other.ends.0
+            };
+            *y >= frame.top + 13.0 && *y <= frame.bottom() - 4.0 && taken.iter().all(apart)
+        };
+        let y = [0.0, -LINE, -2.0 * LINE, 2.0 * LINE, 3.0 * LINE]
+            .into_iter()
+            .map(|aside| above + aside)
+            .find(free)
+            .unwrap_or(above);
+        Self { x, y, anchor, ends }
+    }
+}
+
+/// The names of the curves, each in the colour of its curve on a white edge.
+fn draw_names(curves: &[Curve], frame: Frame, svg: &mut String) {
+    let mut taken: Vec<Place> = Vec::new();
+    for curve in curves {
+        let Some((name, point)) = &curve.name else {
+            continue;
+        };
+        let (colour, _) = style(curve.style);
+        let place = Place::of(name, *point, frame, &taken);
+        push(
+            svg,
+            &format!(
+                "<text x=\"{}\" y=\"{}\" text-anchor=\"{}\" fill=\"{colour}\" stroke=\"#fff\" stroke-width=\"4\" stroke-linejoin=\"round\" paint-order=\"stroke\">{}</text>",
+                pixels(place.x),
+                pixels(place.y),
+                place.anchor,
+                escape::xml(name)
+            ),
+        );
+        taken.push(place);
+    }
 }
 
 fn style(index: usize) -> (&'static str, &'static str) {
