@@ -1,3 +1,8 @@
 //! The `ionfolio` program.
 
-fn main() {}
+use ionfolio::cli;
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    cli::run(std::env::args_os()).into()
+}

@@ -32,6 +32,7 @@ pub(super) fn read(
         air: gas?,
         uncertainty: mode?,
         accepted: accepted(reader, keys),
+        carbonate: reader.catalogue.ligand("carbonic acid").cloned(),
         pkw: reader.catalogue.water().cloned(),
     })
 }

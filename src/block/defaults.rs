@@ -70,8 +70,16 @@ impl Defaults {
         defaults
     }
 
+    /// Sets the rounding rule by its name; false if there is none of that name.
+    pub fn set_rounding_rule(&mut self, name: &str) -> bool {
+        let rules = [RoundingRule::HalfEven, RoundingRule::HalfUp];
+        let found = rules.into_iter().find(|rule| rule.name() == name);
+        put(&mut self.rounding, found);
+        found.is_some()
+    }
+
     /// Sets the rounding rule by its name.
-    pub fn set_rounding(&mut self, scalar: &Scalar, diagnostics: &mut Vec<Diagnostic>) {
+    pub(super) fn set_rounding(&mut self, scalar: &Scalar, diagnostics: &mut Vec<Diagnostic>) {
         put(&mut self.rounding, choice::rounding(scalar, diagnostics));
     }
 

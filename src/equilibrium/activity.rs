@@ -32,6 +32,21 @@ pub enum ActivityModel {
     PitzerTerm,
 }
 
+impl ActivityModel {
+    /// lg γ of an ion, dimensionless: charge in elementary charges, ion size in nm (0.4 where none is given), ionic strength in mol/kg.
+    pub fn lg_gamma(
+        self,
+        water: &Water,
+        charge: i8,
+        ion_size: Option<f64>,
+        ionic_strength: f64,
+    ) -> f64 {
+        let z = f64::from(charge);
+        let screening = Screening::at(self, water, ionic_strength);
+        screening.ln_gamma(z * z, ion_size.unwrap_or(0.4)).value / LN_10
+    }
+}
+
 /// ln γ of an ion and its derivative with respect to ionic strength.
 #[derive(Clone, Copy, Debug, Default)]
 pub(super) struct LnGamma {

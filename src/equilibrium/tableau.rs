@@ -53,8 +53,15 @@ impl Species {
 pub struct ComponentIndex(pub(super) usize);
 
 /// A species of a system.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord)]
 pub struct SpeciesIndex(pub(super) usize);
+
+impl ComponentIndex {
+    /// Its place among the components, from 0.
+    pub fn place(self) -> usize {
+        self.0
+    }
+}
 
 impl SpeciesIndex {
     /// Its place among the species, from 0.
@@ -169,6 +176,13 @@ impl System {
             .get(component.0)
             .map_or(0..0, |row| row.own.clone())
             .map(SpeciesIndex)
+    }
+
+    /// The polynuclear species, in the order in which they were given.
+    pub fn polynuclear_species(&self) -> impl Iterator<Item = SpeciesIndex> {
+        self.polynuclear
+            .iter()
+            .map(|species| SpeciesIndex(species.row))
     }
 
     /// Number of species, H+ and OH- not counted.

@@ -2,8 +2,9 @@
 
 use crate::problem::Input;
 use crate::quantity::{Number, Pressure, Temperature};
-use crate::substance::Constant;
+use crate::substance::{Constant, Ligand};
 use std::collections::BTreeSet;
+use std::sync::Arc;
 
 /// A value with where it was stated.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -38,6 +39,8 @@ pub struct Conditions {
     pub uncertainty: Stated<UncertaintyMode>,
     /// What the analyst accepts in so many words.
     pub accepted: BTreeSet<Acceptance>,
+    /// The acid family of dissolved carbon dioxide, where the air holds it.
+    pub carbonate: Option<Arc<Ligand>>,
     /// The user's own pKw at zero ionic strength, in place of the formulation.
     pub pkw: Option<Constant>,
 }

@@ -28,6 +28,14 @@ pub enum DecimalError {
         /// The same number with a point.
         corrected: String,
     },
+    /// A comma that may be a decimal comma or may group thousands.
+    #[error("a comma that can be read two ways; write {as_decimal} or {as_thousands}")]
+    AmbiguousComma {
+        /// The number if the comma was a decimal comma.
+        as_decimal: String,
+        /// The number if the comma grouped thousands.
+        as_thousands: String,
+    },
     /// Digits are grouped by spaces, commas or apostrophes.
     #[error("digits are grouped; write them without separators")]
     Grouped,
@@ -65,7 +73,7 @@ impl Decimal {
     /// # Errors
     /// [`DecimalError`] says what is wrong; a decimal comma is reported with the corrected text.
     pub fn parse(text: &str) -> Result<Self, DecimalError> {
-        let text = normalised(text.trim());
+        let text = with_ascii_signs(text.trim());
         if text.is_empty() {
             return Err(DecimalError::Empty);
         }
@@ -84,7 +92,18 @@ impl Decimal {
 
     /// The shortest decimal that reads back as this finite number; zero for anything that is not finite.
     pub fn shortest(value: f64) -> Self {
-        Self::parse(&format!("{value:e}")).unwrap_or(Self::new(false, 0, 0))
+        let text = format!("{value:e}");
+        let parts = text.split_once('e').and_then(|(mantissa, power)| {
+            let power: i32 = power.parse().ok()?;
+            let size = mantissa.trim_start_matches('-');
+            let (digits, shift) = read_mantissa(size, size).ok()?;
+            Some(Self::new(
+                size.len() < mantissa.len(),
+                digits,
+                power - shift,
+            ))
+        });
+        parts.unwrap_or(Self::new(false, 0, 0))
     }
 
     /// The nearest floating-point number, correctly rounded; dimensionless like the digits themselves.
@@ -160,51 +179,68 @@ impl fmt::Display for Decimal {
     }
 }
 
-/// Unicode minus signs, multiplication signs and superscripts as ASCII.
-fn normalised(text: &str) -> String {
-    text.chars()
-        .map(|c| match c {
-            '−' | '–' | '‐' | '⁻' => '-',
-            '×' | '·' | '✕' => 'x',
-            '⁺' => '+',
-            '⁰' => '0',
-            '¹' => '1',
-            '²' => '2',
-            '³' => '3',
-            '⁴' => '4',
-            '⁵' => '5',
-            '⁶' => '6',
-            '⁷' => '7',
-            '⁸' => '8',
-            '⁹' => '9',
-            other => other,
-        })
-        .collect()
+/// Unicode minus signs as ASCII; superscripts are left, since they may stand in an exponent only.
+fn with_ascii_signs(text: &str) -> String {
+    text.replace(['−', '–', '‐', '﹣', '－'], "-")
 }
 
-/// Splits `2.5x10^-3` or `2.5e-3` into mantissa and exponent.
+/// Splits `2.5×10^-3`, `2.5 × 10⁻³` or `2.5e-3` into mantissa and exponent.
 fn split_exponent(text: &str) -> Result<(&str, i32), DecimalError> {
-    let parts = text
-        .split_once(['x', '*'])
-        .and_then(|(mantissa, power)| {
-            let power = power.trim().strip_prefix("10")?;
-            Some((mantissa.trim(), power.strip_prefix('^').unwrap_or(power)))
-        })
-        .or_else(|| text.split_once(['e', 'E']));
-    match parts {
+    if let Some((mantissa, power)) = text.split_once(['x', 'X', '×', '✕', '·', '⋅', '*']) {
+        return Ok((mantissa.trim_end(), power_of_ten(power.trim_start())?));
+    }
+    match text.split_once(['e', 'E']) {
+        Some((mantissa, power)) => Ok((mantissa, exponent_of(power)?)),
         None => Ok((text, 0)),
-        Some((mantissa, power)) => {
-            let exponent: i32 = power.trim().parse().map_err(|_error| {
-                let found = power.trim().chars().find(|c| !c.is_ascii_digit());
-                DecimalError::NotANumber {
-                    found: found.unwrap_or('e'),
-                }
-            })?;
-            if exponent.abs() > LARGEST_EXPONENT {
-                return Err(DecimalError::Exponent);
-            }
-            Ok((mantissa, exponent))
-        }
+    }
+}
+
+/// The exponent of `10^-3`, `10⁻³` or `10-3`. Without sign, caret or superscript `103` may be one number, and is refused.
+fn power_of_ten(text: &str) -> Result<i32, DecimalError> {
+    let found = |text: &str| DecimalError::NotANumber {
+        found: text.chars().next().unwrap_or('×'),
+    };
+    let power = text.strip_prefix("10").ok_or_else(|| found(text))?;
+    let plain: String = power.chars().map(plain_from_superscript).collect();
+    if let Some(written) = plain.strip_prefix('^') {
+        exponent_of(written)
+    } else if plain != power || plain.starts_with(['-', '+']) {
+        exponent_of(&plain)
+    } else {
+        Err(found(power))
+    }
+}
+
+fn exponent_of(text: &str) -> Result<i32, DecimalError> {
+    let text = text.trim();
+    let size = text.strip_prefix(['-', '+']).unwrap_or(text);
+    if let Some(found) = size.chars().find(|c| !c.is_ascii_digit()) {
+        return Err(DecimalError::NotANumber { found });
+    }
+    if size.is_empty() {
+        return Err(DecimalError::NotANumber { found: 'e' });
+    }
+    match text.parse::<i32>() {
+        Ok(exponent) if exponent.abs() <= LARGEST_EXPONENT => Ok(exponent),
+        _ => Err(DecimalError::Exponent),
+    }
+}
+
+fn plain_from_superscript(c: char) -> char {
+    match c {
+        '⁻' => '-',
+        '⁺' => '+',
+        '⁰' => '0',
+        '¹' => '1',
+        '²' => '2',
+        '³' => '3',
+        '⁴' => '4',
+        '⁵' => '5',
+        '⁶' => '6',
+        '⁷' => '7',
+        '⁸' => '8',
+        '⁹' => '9',
+        other => other,
     }
 }
 
@@ -236,14 +272,25 @@ fn read_mantissa(mantissa: &str, whole_text: &str) -> Result<(u128, i32), Decima
     Ok((digits, shift.unwrap_or(0)))
 }
 
-/// One comma and no point is a decimal comma; anything else is grouping.
+/// One comma and no point is a decimal comma, unless three digits after it could be a group; anything else is grouping.
 fn comma(mantissa: &str, whole_text: &str) -> DecimalError {
-    if mantissa.matches(',').count() == 1 && !mantissa.contains('.') {
-        DecimalError::DecimalComma {
-            corrected: whole_text.replacen(',', ".", 1),
+    let Some((before, after)) = mantissa.split_once(',') else {
+        return DecimalError::Grouped;
+    };
+    if after.contains([',', '.']) || before.contains('.') {
+        return DecimalError::Grouped;
+    }
+    let as_decimal = whole_text.replacen(',', ".", 1);
+    let group = after.len() == 3 && !before.starts_with('0') && (1..=3).contains(&before.len());
+    if group {
+        DecimalError::AmbiguousComma {
+            as_decimal,
+            as_thousands: whole_text.replacen(',', "", 1),
         }
     } else {
-        DecimalError::Grouped
+        DecimalError::DecimalComma {
+            corrected: as_decimal,
+        }
     }
 }
 
@@ -294,6 +341,13 @@ mod tests {
                 corrected: "0.05".to_owned()
             })
         );
+        assert_eq!(
+            Decimal::parse("1,000"),
+            Err(DecimalError::AmbiguousComma {
+                as_decimal: "1.000".to_owned(),
+                as_thousands: "1000".to_owned()
+            })
+        );
         assert_eq!(Decimal::parse("1,000,000"), Err(DecimalError::Grouped));
         assert_eq!(Decimal::parse("1 000"), Err(DecimalError::Grouped));
         assert_eq!(
@@ -309,8 +363,18 @@ mod tests {
     }
 
     #[test]
+    fn a_power_that_can_be_read_two_ways_is_no_power() {
+        for text in ["10²", "2.5x103", "2.5×10", "2.5e", "2.5e1.5", "1·5", "⁻5"] {
+            assert!(
+                matches!(Decimal::parse(text), Err(DecimalError::NotANumber { .. })),
+                "{text}"
+            );
+        }
+    }
+
+    #[test]
     fn shortest_reads_back() {
-        for value in [0.1, -2.5e-9, 6.865, 1e22, f64::MIN_POSITIVE] {
+        for value in [0.1, -2.5e-9, 6.865, 1e22, f64::MIN_POSITIVE, 5e-324] {
             assert_eq!(Decimal::shortest(value).to_f64().to_bits(), value.to_bits());
         }
     }

@@ -5,6 +5,8 @@
 
 mod decimal;
 mod dimension;
+mod glassware;
+mod refused_unit;
 mod rounding;
 mod uncertain;
 mod unit;
@@ -14,6 +16,7 @@ pub use dimension::{
     Amount, AmountConcentration, Density, Dimension, Mass, MassConcentration, MassFraction,
     Molality, MolarMass, Number, Pressure, Temperature, Volume,
 };
+pub use glassware::{Class, Glassware, GlasswareError, Vessel};
 pub use rounding::RoundingRule;
 pub use uncertain::{Measured, Spread, Uncertainty};
 pub use unit::{Unit, UnitError};

@@ -1,6 +1,6 @@
-//! The table of units that a page may use, and the units that are refused with their reason.
+//! The table of units that a page may use.
 
-use crate::quantity::Decimal;
+use crate::quantity::{Decimal, refused_unit};
 use std::fmt;
 
 /// A unit.
@@ -118,7 +118,7 @@ const TABLE: [Entry; 33] = [
     entry(Unit::Milligram, "mg", &[], -3),
     entry(Unit::Microgram, "µg", &["ug", "mcg"], -6),
     entry(Unit::Litre, "L", &["l", "litre", "liter", "dm3"], 0),
-    entry(Unit::Millilitre, "mL", &["ml", "cm3"], -3),
+    entry(Unit::Millilitre, "mL", &["ml", "cm3", "cc"], -3),
     entry(Unit::Microlitre, "µL", &["ul", "µl", "uL", "mm3"], -6),
     entry(Unit::Mole, "mol", &["mole"], 0),
     entry(Unit::Millimole, "mmol", &[], -3),
@@ -138,28 +138,44 @@ const TABLE: [Entry; 33] = [
     entry(
         Unit::MicromolePerLitre,
         "µmol/L",
-        &["uM", "µM", "umol/L", "umol/l", "µmol/l"],
+        &[
+            "uM",
+            "µM",
+            "umol/L",
+            "umol/l",
+            "µmol/l",
+            "µmol L-1",
+            "umol L-1",
+            "µmol l-1",
+        ],
         -6,
     ),
-    entry(Unit::NanomolePerLitre, "nmol/L", &["nM", "nmol/l"], -9),
+    entry(
+        Unit::NanomolePerLitre,
+        "nmol/L",
+        &["nM", "nmol/l", "nmol L-1", "nmol l-1"],
+        -9,
+    ),
     entry(Unit::MolePerKilogram, "mol/kg", &["mol kg-1"], 0),
     entry(Unit::MillimolePerKilogram, "mmol/kg", &["mmol kg-1"], -3),
     entry(
         Unit::GramPerLitre,
         "g/L",
-        &["g/l", "g L-1", "mg/mL", "mg/ml"],
+        &["g/l", "g L-1", "g l-1", "g/dm3", "mg/mL", "mg/ml"],
         0,
     ),
     entry(
         Unit::MilligramPerLitre,
         "mg/L",
-        &["mg/l", "mg L-1", "ug/mL", "µg/mL", "µg/ml"],
+        &[
+            "mg/l", "mg L-1", "mg l-1", "mg/dm3", "ug/mL", "µg/mL", "µg/ml", "ug/ml",
+        ],
         -3,
     ),
     entry(
         Unit::GramPerMillilitre,
         "g/mL",
-        &["g/ml", "g/cm3", "g mL-1"],
+        &["g/ml", "g/cm3", "g mL-1", "g ml-1", "g cm-3"],
         0,
     ),
     entry(Unit::KilogramPerLitre, "kg/L", &["kg/l", "kg/dm3"], 0),
@@ -184,27 +200,6 @@ const TABLE: [Entry; 33] = [
     entry(Unit::GramPerMole, "g/mol", &["g mol-1"], 0),
 ];
 
-const NORMALITY: &str = "a normality has no single meaning for a polyprotic acid; state mol/L";
-
-/// Units that are understood and not accepted.
-const REFUSED: [(&str, &str); 12] = [
-    ("N", NORMALITY),
-    ("mN", NORMALITY),
-    ("eq/L", NORMALITY),
-    ("meq/L", NORMALITY),
-    ("val/L", NORMALITY),
-    ("m", "m may mean molal or metre; state mol/kg"),
-    ("molal", "state mol/kg"),
-    ("molar", "state mol/L"),
-    ("% w/v", "state g/L (1 % w/v is 10 g/L)"),
-    (
-        "% v/v",
-        "a volume fraction needs densities of liquid and mixture; state a mass, or % w/w with the density",
-    ),
-    ("°F", "state °C"),
-    ("drops", "a drop is no unit; state mL"),
-];
-
 impl Unit {
     /// Reads a unit in any of its spellings; micro, degree and multiplication signs in their several forms are taken.
     ///
@@ -218,11 +213,8 @@ impl Unit {
         if let Some(entry) = known {
             return Ok(entry.unit);
         }
-        let refused = REFUSED
-            .iter()
-            .find(|(symbol, _)| *symbol == wanted || *symbol == text.trim());
-        match refused {
-            Some((_, reason)) => Err(UnitError::Refused {
+        match refused_unit::reason(&wanted) {
+            Some(reason) => Err(UnitError::Refused {
                 found: text.trim().to_owned(),
                 reason,
             }),
@@ -293,9 +285,10 @@ impl fmt::Display for Unit {
     }
 }
 
-/// One spelling for the several Unicode forms of micro, degree, minus, middle dot and superscripts.
+/// One spelling for the several Unicode forms of micro, degree, minus, middle dot, slash and superscripts; none for blanks around a slash.
 fn normalised(text: &str) -> String {
-    text.replace(['μ'], "µ")
+    let text = text
+        .replace(['μ'], "µ")
         .replace("℃", "°C")
         .replace(['º', '˚'], "°")
         .replace(['·', '⋅', '\u{a0}', '\u{202f}'], " ")
@@ -303,7 +296,16 @@ fn normalised(text: &str) -> String {
         .replace('¹', "1")
         .replace('³', "3")
         .replace("^-", "-")
-        .replace("∕", "/")
+        .replace(['∕', '⁄'], "/");
+    let mut words = text.split_whitespace();
+    let mut joined = words.next().unwrap_or_default().to_owned();
+    for word in words {
+        if !joined.ends_with('/') && !word.starts_with('/') {
+            joined.push(' ');
+        }
+        joined.push_str(word);
+    }
+    joined
 }
 
 #[cfg(test)]
@@ -328,6 +330,8 @@ mod tests {
             ("mol/L", Unit::MolePerLitre),
             ("mol·L⁻¹", Unit::MolePerLitre),
             ("mM", Unit::MillimolePerLitre),
+            ("mol / L", Unit::MolePerLitre),
+            ("µmol  L^-1", Unit::MicromolePerLitre),
             ("μL", Unit::Microlitre),
             ("µL", Unit::Microlitre),
             ("uL", Unit::Microlitre),
@@ -341,7 +345,7 @@ mod tests {
 
     #[test]
     fn normality_is_refused_with_the_reason() {
-        for text in ["N", "eq/L"] {
+        for text in ["N", "eq/L", "g / 100 mL", "°dH", "% w/v"] {
             assert!(
                 matches!(Unit::parse(text), Err(UnitError::Refused { .. })),
                 "{text}"

@@ -2,7 +2,7 @@
 
 use crate::equilibrium::Certificate;
 use crate::problem::{ActivityChoice, Composition, InputId, ShortcutName};
-use crate::substance::{Form, InertIon, Ligand};
+use crate::substance::{Constant, Form, InertIon, Ligand};
 use std::sync::Arc;
 
 /// The whole answer to one statement.
@@ -15,6 +15,8 @@ pub struct Answer {
     pub state: State,
     /// What the task asked for besides.
     pub outcome: Outcome,
+    /// Shares of the species over a range of pH; `None` where no component has more than one dissociation step.
+    pub distribution: Option<Distribution>,
     /// Uncertainty budget of the pH (of the headline quantity where the task has another).
     pub budget: Option<Budget>,
     /// Monte Carlo simulation, if asked for.
@@ -120,6 +122,28 @@ pub struct ComponentTotal {
     pub molality: f64,
     /// Amount concentration in mol/L.
     pub concentration: f64,
+}
+
+/// Shares of species and buffer capacity over a range of pH, at the ionic strength of the state.
+#[derive(Clone, Debug, Default)]
+pub struct Distribution {
+    /// The pH of each point, increasing.
+    pub ph: Vec<f64>,
+    /// One curve for each protonation state of each ligand, most protonated first.
+    pub curves: Vec<DistributionCurve>,
+    /// Buffer capacity in mol/L per unit of pH at each point; empty where it was not computed.
+    pub buffer_capacity: Vec<f64>,
+}
+
+/// The share of one species of its component over pH.
+#[derive(Clone, Debug)]
+pub struct DistributionCurve {
+    /// The ligand.
+    pub component: String,
+    /// The species, named as in [`SpeciesState::name`].
+    pub species: String,
+    /// Share of the component at each point, 0 to 1.
+    pub fractions: Vec<f64>,
 }
 
 /// What a task asks for besides the state of the solution.
@@ -370,6 +394,8 @@ pub struct BudgetLine {
     pub sensitivity: f64,
     /// Share of the combined variance, 0 to 1.
     pub share: f64,
+    /// Degrees of freedom, where given.
+    pub degrees_of_freedom: Option<f64>,
     /// Where the uncertainty comes from: stated, tolerance, replicates, constant's source, model.
     pub origin: String,
 }
@@ -452,6 +478,8 @@ pub struct Comparison {
 /// Everything that is needed to compute an answer again without a library.
 #[derive(Clone, Debug, Default)]
 pub struct ConstantsUsed {
+    /// The user's own pKw, where one was stated.
+    pub water: Option<Constant>,
     /// The ligands with their constants.
     pub ligands: Vec<Arc<Ligand>>,
     /// The inert ions.
@@ -460,6 +488,8 @@ pub struct ConstantsUsed {
     pub forms: Vec<Arc<Form>>,
     /// The pK of each step at the temperature of the block: ligand, step from 1, pK.
     pub pk_at_temperature: Vec<(String, usize, f64)>,
+    /// Further constants that entered, each a sentence part with its source: CO₂ solubility, polyborates.
+    pub further: Vec<String>,
 }
 
 /// A stated assumption and what it costs.

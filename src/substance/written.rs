@@ -84,6 +84,8 @@ fn stored_substance(ligand: &Ligand) -> StoredSubstance {
 fn stored_form(form: &Form) -> StoredForm {
     StoredForm {
         form: form.name.clone(),
+        synonyms: form.synonyms.clone(),
+        cas: form.cas.clone(),
         formula: form
             .formula
             .as_ref()

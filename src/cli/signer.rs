@@ -1,0 +1,69 @@
+//! `ionfolio signer`.
+
+use crate::cli::ExitStatus;
+use crate::cli::arguments::{SignerArguments, SignerCommand};
+use crate::cli::terminal::Terminal;
+use crate::procedure::surroundings::Surroundings;
+use crate::procedure::{enrol, make_key, retire, roster_lines, signer_name};
+
+pub(super) fn run(
+    arguments: &SignerArguments,
+    surroundings: &Surroundings<'_>,
+    terminal: &mut Terminal,
+) -> ExitStatus {
+    match &arguments.command {
+        SignerCommand::New { name } => {
+            let made = signer_name(name).and_then(|signer| make_key(surroundings, &signer));
+            match made {
+                Ok(made) => {
+                    terminal.out(&format!("{} {}", made.signer, made.fingerprint));
+                    terminal.say(&format!(
+                        "private key: {}, {}",
+                        made.path.display(),
+                        made.permissions
+                    ));
+                    terminal.say("The signer is on no roster yet; give the `.pub` file beside it to the keeper of the notebook's roster.");
+                    ExitStatus::AllWell
+                }
+                Err(error) => failed(&error.to_string(), terminal),
+            }
+        }
+        SignerCommand::List { notebook } => match roster_lines(notebook) {
+            Ok(lines) => {
+                for line in lines {
+                    terminal.out(&line);
+                }
+                ExitStatus::AllWell
+            }
+            Err(error) => failed(&error.to_string(), terminal),
+        },
+        SignerCommand::Enrol {
+            signer,
+            key,
+            notebook,
+        } => match enrol(notebook, signer, key, surroundings) {
+            Ok(path) => {
+                terminal.say(&format!("{signer} enrolled on {}", path.display()));
+                ExitStatus::AllWell
+            }
+            Err(error) => failed(&error.to_string(), terminal),
+        },
+        SignerCommand::Retire { signer, notebook } => {
+            match retire(notebook, signer, surroundings) {
+                Ok(path) => {
+                    terminal.say(&format!(
+                        "{signer} retired on {}; what was signed before stays good",
+                        path.display()
+                    ));
+                    ExitStatus::AllWell
+                }
+                Err(error) => failed(&error.to_string(), terminal),
+            }
+        }
+    }
+}
+
+fn failed(message: &str, terminal: &Terminal) -> ExitStatus {
+    terminal.say(message);
+    ExitStatus::CannotReadOrWrite
+}

@@ -1,0 +1,165 @@
+//! The hand that signs: a signer's key with the registers and the roster at hand, and the register it writes.
+
+use crate::notebook::{ReplaceError, create, replace};
+use crate::procedure::Desk;
+use crate::procedure::records::Records;
+use crate::procedure::surroundings::Surroundings;
+use crate::record::{self, Entry, KeyFile, Register, SignerName, Signing, Standing, TextLine};
+use chrono::{DateTime, FixedOffset, TimeDelta};
+use std::fs;
+use std::path::PathBuf;
+
+/// A signer about to sign.
+pub(super) struct Hand<'s> {
+    pub(super) records: Records,
+    pub(super) surroundings: &'s Surroundings<'s>,
+    pub(super) signer: SignerName,
+    /// Whether the signer is on the roster.
+    pub(super) on_roster: bool,
+    printed: TextLine,
+    key: KeyFile,
+    offset_minutes: i32,
+    addition: String,
+}
+
+/// Why a signer cannot sign here.
+#[derive(Debug, thiserror::Error)]
+pub enum HandError {
+    /// The roster does not let this key sign for this signer.
+    #[error("the roster does not let this key sign for {signer}: {standing}")]
+    NotOnRoster {
+        /// The signer.
+        signer: SignerName,
+        /// How the key stands.
+        standing: &'static str,
+    },
+    /// A printed name holds what no record may hold.
+    #[error("{printed:?} cannot stand in a record as a printed name")]
+    Name {
+        /// The printed name.
+        printed: String,
+    },
+    /// The register was not written.
+    #[error("{path}: {error}", path = .path.display())]
+    Register {
+        /// The register.
+        path: PathBuf,
+        /// Why.
+        error: ReplaceError,
+    },
+}
+
+impl std::fmt::Debug for Hand<'_> {
+    fn fmt(&self, formatter: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        write!(formatter, "Hand({})", self.signer)
+    }
+}
+
+impl<'s> Hand<'s> {
+    /// The hand of a signer with a key. A signer that nobody enrolled yet may sign, and is told so; a key that the roster refuses may not.
+    pub(super) fn of(
+        desk: &Desk,
+        mut records: Records,
+        surroundings: &'s Surroundings<'s>,
+        (signer, key): (SignerName, KeyFile),
+        printed: Option<&str>,
+    ) -> Result<Self, HandError> {
+        let offset_minutes = desk
+            .notebook
+            .as_ref()
+            .map_or(0, |notebook| notebook.offset_minutes);
+        let now = surroundings.clock.now(offset_minutes);
+        let public = record::Signer::public_key(&key);
+        let refused = |standing| HandError::NotOnRoster {
+            signer: signer.clone(),
+            standing,
+        };
+        let standing = records.roster.standing(&signer, public, now);
+        match standing {
+            Standing::Valid => {}
+            Standing::UnknownSigner => records
+                .roster
+                .enrol(signer.clone(), public.clone(), now - TimeDelta::seconds(1))
+                .map_err(|_taken| refused("the key is enrolled for somebody else"))?,
+            Standing::UnknownKey => return Err(refused("another key is enrolled")),
+            Standing::NotYet(_) => return Err(refused("its dates have not begun")),
+            Standing::Retired(_) => return Err(refused("it is retired")),
+        }
+        let text = printed.map_or_else(|| signer.to_string(), str::to_owned);
+        let known = records
+            .printed_name(&signer)
+            .filter(|name| name.as_str() != signer.as_str());
+        let printed = match known {
+            Some(name) => name,
+            None => TextLine::new(&text).map_err(|_fault| HandError::Name { printed: text })?,
+        };
+        Ok(Self {
+            on_roster: standing == Standing::Valid,
+            records,
+            surroundings,
+            signer,
+            printed,
+            key,
+            offset_minutes,
+            addition: String::new(),
+        })
+    }
+
+    /// The time by the notebook's clock.
+    pub(super) fn now(&self) -> DateTime<FixedOffset> {
+        self.surroundings.clock.now(self.offset_minutes)
+    }
+
+    /// Everything that a signature needs.
+    pub(super) fn signing<'a>(&'a self, note: Option<&'a TextLine>) -> Signing<'a> {
+        Signing {
+            signer: &self.signer,
+            name: &self.printed,
+            time: self.now(),
+            note,
+            registers: &self.records.registers,
+            roster: &self.records.roster,
+            policy: &self.records.policy,
+            people: &self.records.people,
+            key: &self.key,
+        }
+    }
+
+    /// Takes an act into the signer's register, in memory.
+    pub(super) fn take(&mut self, entry: Entry, addition: &str) {
+        self.addition.push_str(addition);
+        let at = self
+            .records
+            .registers
+            .iter()
+            .position(|register| *register.signer() == self.signer);
+        let before = match at {
+            Some(at) => self.records.registers.remove(at),
+            None => Register::empty(self.signer.clone()),
+        };
+        self.records.registers.push(before.with(entry));
+    }
+
+    /// Writes what was added to the register, synced; `None` where nothing was.
+    pub(super) fn write_register(&self) -> Result<Option<PathBuf>, HandError> {
+        if self.addition.is_empty() {
+            return Ok(None);
+        }
+        let folder = &self.records.register_folder;
+        let path = folder.join(format!("{}.md", self.signer));
+        let failed = |error| HandError::Register {
+            path: path.clone(),
+            error,
+        };
+        fs::create_dir_all(folder).map_err(|error| failed(ReplaceError::System(error)))?;
+        match fs::read(&path) {
+            Ok(before) => {
+                let mut after = before.clone();
+                after.extend_from_slice(self.addition.as_bytes());
+                replace(&path, &before, &after).map_err(failed)?;
+            }
+            Err(_absent) => create(&path, self.addition.as_bytes()).map_err(failed)?,
+        }
+        Ok(Some(path))
+    }
+}
