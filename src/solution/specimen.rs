@@ -87,6 +87,10 @@ pub(super) fn statement(problem: Problem, celsius: &str) -> Statement {
             uncertainty: stated(UncertaintyMode::Budget),
             accepted: BTreeSet::new(),
             pkw: None,
+            carbonate: Catalogue::embedded()
+                .unwrap()
+                .ligand("carbonic acid")
+                .cloned(),
         },
         problem,
         hand_value: None,
