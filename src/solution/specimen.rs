@@ -88,6 +88,10 @@ pub(super) fn statement(problem: Problem, celsius: &str) -> Statement {
             accepted: BTreeSet::new(),
             carbonate: None,
             pkw: None,
+            carbonate: Catalogue::embedded()
+                .unwrap()
+                .ligand("carbonic acid")
+                .cloned(),
         },
         problem,
         hand_value: None,
