@@ -5,6 +5,7 @@
 
 pub mod surroundings;
 
+mod claim;
 mod compute;
 mod countersign;
 mod desk;

@@ -80,61 +80,64 @@ impl PageWork {
             ));
             return work;
         }
-        let mut labels: BTreeMap<String, Span> = BTreeMap::new();
-        for (index, block) in page.blocks().iter().enumerate() {
-            let outline = block::outline(block.content().text());
-            let here = sources.for_block(outline.label.as_deref().unwrap_or_default());
-            let reading = block::read(block.content().text(), &here.context());
-            let excerpt = block.content();
-            work.faults.extend(
-                reading
-                    .diagnostics
-                    .into_iter()
-                    .map(|fault| fault.in_page(excerpt)),
-            );
-            let Some((label, excerpt_span)) = reading.label else {
-                continue;
-            };
-            let span = excerpt.in_page(excerpt_span);
-            if let Some(first) = labels.insert(label.to_string(), span) {
-                work.faults.push(
-                    Diagnostic::error(
-                        Rule::DuplicateLabel,
-                        span,
-                        format!("the label `{label}` stands twice in this page"),
-                    )
-                    .and(first, "first here")
-                    .helped("give this block a label of its own"),
-                );
-                continue;
-            }
-            let mut item = BlockWork {
-                label: label.to_string(),
-                index,
-                statement: reading.statement,
-                answer: None,
-                rendered: None,
-                template: None,
-                references: reading.references,
-                attachments: reading.attachments,
-            };
-            if solving && let Some(statement) = &item.statement {
-                match finished(desk, name, statement) {
-                    Ok((answer, rendered, template)) => {
-                        item.answer = Some(answer);
-                        item.rendered = Some(rendered);
-                        item.template = Some(template);
-                    }
-                    Err(failure) => {
-                        let label = excerpt_span;
-                        work.faults
-                            .push(failure.diagnostic(&reading.places, label).in_page(excerpt));
-                    }
-                }
-            }
-            work.blocks.push(item);
+        let mut labels = BTreeMap::new();
+        for index in 0..page.blocks().len() {
+            work.take(desk, &sources, index, &mut labels, solving);
         }
         work
+    }
+
+    /// Takes up one block of the page.
+    fn take(
+        &mut self,
+        desk: &Desk,
+        sources: &Sources<'_>,
+        index: usize,
+        labels: &mut BTreeMap<String, Span>,
+        solving: bool,
+    ) {
+        let page = Rc::clone(&self.page);
+        let Some(excerpt) = page.blocks().get(index).map(Block::content) else {
+            return;
+        };
+        let outline = block::outline(excerpt.text());
+        let here = sources.for_block(outline.label.as_deref().unwrap_or_default());
+        let reading = block::read(excerpt.text(), &here.context());
+        let faults = reading.diagnostics.into_iter();
+        self.faults
+            .extend(faults.map(|fault| fault.in_page(excerpt)));
+        let Some((label, label_place)) = reading.label else {
+            return;
+        };
+        let span = excerpt.in_page(label_place);
+        if let Some(first) = labels.insert(label.to_string(), span) {
+            self.faults.push(twice(label.as_str(), span, first));
+            return;
+        }
+        let mut item = BlockWork {
+            label: label.to_string(),
+            index,
+            statement: reading.statement,
+            answer: None,
+            rendered: None,
+            template: None,
+            references: reading.references,
+            attachments: reading.attachments,
+        };
+        if solving && let Some(statement) = &item.statement {
+            match finished(desk, &self.name, statement) {
+                Ok((answer, rendered, template)) => {
+                    item.answer = Some(answer);
+                    item.rendered = Some(rendered);
+                    item.template = Some(template);
+                }
+                Err(failure) => {
+                    let fault = failure.diagnostic(&reading.places, label_place);
+                    self.faults.push(fault.in_page(excerpt));
+                }
+            }
+        }
+        self.blocks.push(item);
     }
 
     /// Solves and renders one statement at a desk; the defaults are not yet among its constants.
@@ -170,6 +173,14 @@ impl PageWork {
             .iter()
             .find(|region| region.label() == label && region.mark().is_none())
     }
+}
+
+/// Two blocks of one label.
+fn twice(label: &str, span: Span, first: Span) -> Diagnostic {
+    let message = format!("the label `{label}` stands twice in this page");
+    Diagnostic::error(Rule::DuplicateLabel, span, message)
+        .and(first, "first here")
+        .helped("give this block a label of its own")
 }
 
 /// Why a block has no result.
@@ -234,7 +245,7 @@ const DEFAULT_LINE: &str = "# where the block is silent: ";
 pub(super) fn with_defaults(markdown: &str, lines: &[String]) -> String {
     let remarks: String = lines
         .iter()
-        .map(|line| format!("{DEFAULT_LINE}{line}\n"))
+        .flat_map(|line| [DEFAULT_LINE, line, "\n"])
         .collect();
     match markdown.rfind(CONSTANTS_FENCE) {
         Some(at) => {

@@ -101,7 +101,6 @@ fn stored_form(form: &Form) -> StoredForm {
             .iter()
             .map(|hazard| hazard.word().to_owned())
             .collect(),
-        ..StoredForm::default()
     }
 }
 

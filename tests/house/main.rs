@@ -1,7 +1,9 @@
 //! The house rules that a machine can check: import table, file sizes, top level, names, documentation.
 #![expect(
     clippy::string_slice,
-    reason = "offsets come from `find` in the same text"
+    clippy::panic,
+    clippy::unwrap_used,
+    reason = "offsets come from `find` in the same text, and a tree that cannot be read stops the run"
 )]
 
 use std::collections::{BTreeMap, BTreeSet};
@@ -74,7 +76,16 @@ const EVERYWHERE: [&str; 2] = ["thiserror", "serde"];
 const LONGEST_FILE: usize = 400;
 
 /// Files that may be longer, each with its reason; at most three, none over 600 lines.
-const LONGER_FILES: [(&str, &str); 0] = [];
+const LONGER_FILES: [(&str, &str); 2] = [
+    (
+        "src/equilibrium/evaluation.rs",
+        "one pass over a tableau with all its derivatives; parts of it would share every field",
+    ),
+    (
+        "src/substance/stored.rs",
+        "the stored form in one place, field by field",
+    ),
+];
 
 /// Everything that may stand at the top level beside dotfiles.
 const TOP_LEVEL: [&str; 8] = [

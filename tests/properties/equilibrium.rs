@@ -1,7 +1,6 @@
 //! Laws of the solver over seeded random problems.
 #![expect(
     clippy::unwrap_used,
-    clippy::indexing_slicing,
     clippy::disallowed_methods,
     reason = "a test may stop where it cannot go on, and its draws need no fixed bytes"
 )]

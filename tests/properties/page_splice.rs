@@ -1,4 +1,5 @@
 //! The law of the page: what was put in and taken out again leaves every byte as it was.
+#![expect(clippy::unwrap_used, reason = "a test may stop where it cannot go on")]
 
 use ionfolio::page::{Mark, Page, Region, Written};
 use proptest::prelude::*;

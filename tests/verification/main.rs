@@ -1,6 +1,12 @@
 //! The laboratory's verification record: each published value is one test with its own name and line of output.
 //!
 //! `cargo test --test verification`; a part of it by name, e.g. `cargo test --test verification phthalate`.
+#![expect(
+    clippy::panic,
+    clippy::as_conversions,
+    clippy::cast_precision_loss,
+    reason = "a wrong case file stops the run, and counts of cases are small"
+)]
 
 mod case;
 mod figures;
