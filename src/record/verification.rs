@@ -203,7 +203,7 @@ impl Check<'_> {
                 self.find(part.clone(), Fault::LooksDifferent(disguise));
             }
         }
-        if statement.defaults != self.parts.defaults.map(Digest::of_lines) {
+        if statement.defaults_digest() != self.parts.defaults.map(Digest::of_lines) {
             self.find(Part::Question, Fault::DefaultsChanged);
         }
     }
