@@ -367,13 +367,12 @@ impl Session<'_> {
                 "the program's own file cannot be read, so its digest is not known".to_owned(),
             )
         })?;
-        let defaults: String = self
-            .desk
-            .defaults
-            .lines()
+        let defaults = self.desk.defaults.lines();
+        let assumed: Vec<TextLine> = defaults
             .iter()
-            .map(|line| format!("{line}\n"))
-            .collect();
+            .map(|line| named("a default", line, TextLine::new))
+            .collect::<Result<_, _>>()?;
+        let defaults: String = defaults.iter().map(|line| format!("{line}\n")).collect();
         Ok(Statement {
             notebook: self.hand.records.identity.clone(),
             page: named("the page", &work.name, NotebookPath::new)?,
@@ -388,6 +387,7 @@ impl Session<'_> {
                 named("the template", &template_name, TextLine::new)?,
                 Digest::of_lines(template.source().as_bytes()),
             ),
+            assumed,
             program: Named::new(
                 named("the program", &program.name, TextLine::new)?,
                 program_digest,
