@@ -86,6 +86,7 @@ pub(super) fn statement(problem: Problem, celsius: &str) -> Statement {
             air: stated(Air::Closed),
             uncertainty: stated(UncertaintyMode::Budget),
             accepted: BTreeSet::new(),
+            carbonate: None,
             pkw: None,
         },
         problem,
