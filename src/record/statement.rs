@@ -134,18 +134,21 @@ impl Statement {
     pub fn parse(bytes: &[u8]) -> Result<Self, LineError> {
         let text = text_of(bytes)?;
         let mut lines = LineReader::new(&text, KIND, KEYS)?;
-        let defaults;
+        let notebook = lines.take("notebook", NotebookId::new)?;
+        let page = lines.take("page", NotebookPath::new)?;
+        let label = lines.take("label", Label::new)?;
+        let supersedes = supersession(&mut lines)?;
+        let question = lines.take("question", Digest::parse)?;
+        let answer = lines.take("answer", Digest::parse)?;
+        let defaults = lines.optional("defaults", Digest::parse)?;
         let statement = Self {
-            notebook: lines.take("notebook", NotebookId::new)?,
-            page: lines.take("page", NotebookPath::new)?,
-            label: lines.take("label", Label::new)?,
-            supersedes: supersession(&mut lines)?,
-            question: lines.take("question", Digest::parse)?,
-            answer: lines.take("answer", Digest::parse)?,
-            defaults: {
-                defaults = lines.optional("defaults", Digest::parse)?;
-                defaults
-            },
+            notebook,
+            page,
+            label,
+            supersedes,
+            question,
+            answer,
+            defaults,
             attachments: ordered(&mut lines, "attachment", NotebookPath::new)?,
             uses: ordered(&mut lines, "uses", ResultName::parse)?,
             template: lines.take("template", |value| Named::parse(value, TextLine::new))?,
@@ -363,7 +366,7 @@ pub(super) mod tests {
         assert_eq!(digest(&bare), stated.defaults);
         let text = stated.print();
         let fault = ValueFault::Defaults;
-        let line = 15;
+        let line = 14;
         let key = "assumed";
         assert_eq!(
             Statement::parse(text.replace("closed", "open").as_bytes()),
