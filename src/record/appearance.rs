@@ -28,6 +28,99 @@ pub enum Disguise {
 /// Elements that change the look of letters only.
 const HARMLESS: [&str; 3] = ["sub", "sup", "br"];
 
+/// Elements that open HTML at the beginning of a line, whatever follows (`CommonMark` 0.31, HTML blocks 1 and 6;
+/// recalled).
+const ELEMENTS: [&str; 66] = [
+    "address",
+    "article",
+    "aside",
+    "base",
+    "basefont",
+    "blockquote",
+    "body",
+    "caption",
+    "center",
+    "col",
+    "colgroup",
+    "dd",
+    "details",
+    "dialog",
+    "dir",
+    "div",
+    "dl",
+    "dt",
+    "fieldset",
+    "figcaption",
+    "figure",
+    "footer",
+    "form",
+    "frame",
+    "frameset",
+    "h1",
+    "h2",
+    "h3",
+    "h4",
+    "h5",
+    "h6",
+    "head",
+    "header",
+    "hr",
+    "html",
+    "iframe",
+    "legend",
+    "li",
+    "link",
+    "main",
+    "menu",
+    "menuitem",
+    "nav",
+    "noframes",
+    "ol",
+    "optgroup",
+    "option",
+    "p",
+    "param",
+    "pre",
+    "script",
+    "search",
+    "section",
+    "style",
+    "summary",
+    "table",
+    "tbody",
+    "td",
+    "textarea",
+    "tfoot",
+    "th",
+    "thead",
+    "title",
+    "tr",
+    "track",
+    "ul",
+];
+
+/// Names of character references whose characters do not show (HTML Living Standard; recalled).
+const HIDDEN_NAMES: [(&str, char); 18] = [
+    ("shy", '\u{ad}'),
+    ("ZeroWidthSpace", '\u{200b}'),
+    ("NegativeVeryThinSpace", '\u{200b}'),
+    ("NegativeThinSpace", '\u{200b}'),
+    ("NegativeMediumSpace", '\u{200b}'),
+    ("NegativeThickSpace", '\u{200b}'),
+    ("zwnj", '\u{200c}'),
+    ("zwj", '\u{200d}'),
+    ("lrm", '\u{200e}'),
+    ("rlm", '\u{200f}'),
+    ("NoBreak", '\u{2060}'),
+    ("ApplyFunction", '\u{2061}'),
+    ("af", '\u{2061}'),
+    ("InvisibleTimes", '\u{2062}'),
+    ("it", '\u{2062}'),
+    ("InvisibleComma", '\u{2063}'),
+    ("ic", '\u{2063}'),
+    ("NewLine", '\n'),
+];
+
 /// Whether a character is invisible or turns the direction of reading, so that a reader does not see what is signed.
 ///
 /// The default-ignorable code points and bidirectional controls of the Unicode Character Database (recalled), the line
@@ -61,7 +154,8 @@ pub(super) fn is_hidden(character: char) -> bool {
 /// Everything in a text of many lines that makes it look different from what it is.
 ///
 /// Tab and line ends are as expected; a CR counts unless an LF follows. HTML counts, but for `<sub>`, `<sup>`, `<br>`
-/// and their ends without attributes, and links between angle brackets.
+/// and their ends without attributes, and links between angle brackets. A character reference counts if the character
+/// that a viewer puts in its place would.
 #[must_use]
 pub fn disguises(bytes: &[u8]) -> Vec<Disguise> {
     let text = match std::str::from_utf8(bytes) {
@@ -74,16 +168,24 @@ pub fn disguises(bytes: &[u8]) -> Vec<Disguise> {
     };
     let mut found = Vec::new();
     for (at, character) in text.char_indices() {
+        let rest = text.get(at + character.len_utf8()..).unwrap_or_default();
         let plain = match character {
             '\n' | '\t' => true,
-            '\r' => bytes.get(at + 1) == Some(&b'\n'),
+            '\r' => rest.starts_with('\n'),
             _ => !character.is_control() && !is_hidden(character),
         };
         if !plain {
             found.push(Disguise::Character { at, character });
         }
-        if character == '<' && is_markup(text.get(at + 1..).unwrap_or_default()) {
+        let before = text.get(..at).unwrap_or_default();
+        if character == '<' && (is_markup(rest) || begins_line(before) && opens_element(rest)) {
             found.push(Disguise::Markup { at });
+        }
+        if character == '&'
+            && let Some(character) = referred(rest)
+            && (character.is_control() || is_hidden(character))
+        {
+            found.push(Disguise::Character { at, character });
         }
     }
     found
@@ -104,8 +206,56 @@ fn is_markup(rest: &str) -> bool {
         .trim_start_matches('/')
         .trim_end_matches('/')
         .trim_end();
-    let link = inside.contains("://") && !inside.contains(char::is_whitespace);
-    !HARMLESS.contains(&name) && !link
+    !HARMLESS.contains(&name) && !is_link(inside)
+}
+
+/// Whether nothing stands before it on its line but blanks and the marks of lists and quotations.
+fn begins_line(before: &str) -> bool {
+    let line = before.rsplit('\n').next().unwrap_or_default();
+    line.chars().all(|c| {
+        c.is_whitespace() || c.is_ascii_digit() || matches!(c, '>' | '-' | '*' | '+' | '.' | ')')
+    })
+}
+
+/// Whether a viewer takes what follows `<` as HTML up to the next empty line, though no `>` follows in the text: what
+/// stands there would be read as attributes and not be shown.
+fn opens_element(rest: &str) -> bool {
+    let bare = rest.strip_prefix('/').unwrap_or(rest);
+    let end = bare
+        .find(|c: char| !c.is_ascii_alphanumeric())
+        .unwrap_or(bare.len());
+    let (name, after) = bare.split_at_checked(end).unwrap_or_default();
+    let parted = after.is_empty() || after.starts_with(|c: char| c.is_whitespace() || c == '/');
+    parted
+        && ELEMENTS
+            .iter()
+            .any(|element| element.eq_ignore_ascii_case(name))
+}
+
+/// Whether what stands between angle brackets is a link: a scheme, `://` and no blank (`CommonMark` 0.31, autolinks).
+fn is_link(inside: &str) -> bool {
+    let Some((scheme, _)) = inside.split_once("://") else {
+        return false;
+    };
+    let known = |c: char| c.is_ascii_alphanumeric() || matches!(c, '+' | '.' | '-');
+    (2..=32).contains(&scheme.len())
+        && scheme.chars().all(known)
+        && !inside.contains(|c: char| c.is_whitespace() || c == '<')
+}
+
+/// The character that a viewer puts in the place of the reference that follows `&`, if it is one by number or one of
+/// the names of hidden characters.
+fn referred(rest: &str) -> Option<char> {
+    let (name, _) = rest.split_once(';')?;
+    if let Some((_, character)) = HIDDEN_NAMES.iter().find(|(known, _)| *known == name) {
+        return Some(*character);
+    }
+    let digits = name.strip_prefix('#')?;
+    let number = match digits.strip_prefix(['x', 'X']) {
+        Some(hexadecimal) => u32::from_str_radix(hexadecimal, 16),
+        None => digits.parse(),
+    };
+    char::from_u32(number.ok()?)
 }
 
 #[cfg(test)]
@@ -133,5 +283,47 @@ mod tests {
             [Disguise::Markup { at: 0 }, Disguise::Markup { at: 28 }]
         );
         assert_eq!(disguises(b"ab\xff"), [Disguise::NotText { at: 2 }]);
+    }
+
+    #[test]
+    fn an_element_that_is_left_open_swallows_what_follows() {
+        for text in [
+            "<div hidden\npH 7.20\n\nmore\n",
+            "</DIV\nx\n",
+            "<Style\n",
+            "<p/",
+            "- > <ul\n",
+        ] {
+            assert_eq!(
+                disguises(text.as_bytes()),
+                [Disguise::Markup {
+                    at: text.find('<').unwrap()
+                }],
+                "{text}"
+            );
+        }
+        assert_eq!(
+            disguises(b"c(Pb) <LOD, Na <Li or x <y\n<LOD; p <0.05 &c; R&D\n"),
+            [],
+            "less-than signs of a laboratory"
+        );
+        let script = disguises(b"<a/href=javascript://x>");
+        assert_eq!(script, [Disguise::Markup { at: 0 }]);
+    }
+
+    #[test]
+    fn a_reference_to_a_hidden_character_hides_as_well() {
+        for (text, character) in [
+            ("&#x202e;", '\u{202e}'),
+            ("&#8238;", '\u{202e}'),
+            ("&#X200B;", '\u{200b}'),
+            ("&rlm;", '\u{200f}'),
+            ("&#13;", '\r'),
+        ] {
+            let found = disguises(text.as_bytes());
+            assert_eq!(found, [Disguise::Character { at: 0, character }], "{text}");
+        }
+        let shown = "&#39; &lt; &amp;#x202e; &nbsp; &#8239; &rlm &#xd800;";
+        assert_eq!(disguises(shown.as_bytes()), []);
     }
 }

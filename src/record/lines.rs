@@ -103,6 +103,9 @@ pub enum ValueFault {
     /// Not a name and a digest.
     #[error("is not a name followed by a digest")]
     NamedDigest,
+    /// The digest of the defaults is not that of the lines that state them.
+    #[error("states other defaults than `defaults:` gives the digest of")]
+    Defaults,
     /// The same line twice, or lines out of their order.
     #[error("stands twice or out of order")]
     Order,

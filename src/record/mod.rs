@@ -27,6 +27,7 @@
 //!     attachments: vec![],
 //!     uses: vec![],
 //!     template: Named::new(TextLine::new("built-in speciation")?, Digest::of_file(b"")),
+//!     assumed: vec![],
 //!     program: Named::new(TextLine::new("ionfolio 0.1.0")?, Digest::of_file(b"")),
 //!     result: TextLine::new("pH 7.20")?,
 //! };

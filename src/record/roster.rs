@@ -258,9 +258,12 @@ impl Enrolment {
             valid_before: None,
         };
         let mut namespaces = None;
-        for option in options.split("\",") {
+        // `ssh-keygen` refuses a line whose quotation marks do not pair, so it gives nobody a right here either.
+        for option in options.strip_suffix('"')?.split("\",") {
             let (name, value) = option.split_once("=\"")?;
-            let value = value.strip_suffix('"').unwrap_or(value);
+            if value.contains('"') {
+                return None;
+            }
             match name {
                 "namespaces" if namespaces.is_none() => namespaces = Some(value),
                 "valid-after" if entry.valid_after.is_none() => {
@@ -334,11 +337,13 @@ mod tests {
              *@example.org cert-authority {public}\n\
              other namespaces=\"git\" {public}\n\
              third namespaces=\"ionfolio\",valid-after=\"20260101\" {public}\n\
-             fourth namespaces=\"ionfolio\",valid-after=\"20260101Z\",valid-before=\"202612312359Z\" {public}"
+             fourth namespaces=\"ionfolio\",valid-after=\"20260101Z\",valid-before=\"202612312359Z\" {public}\n\
+             fifth namespaces=\"ionfolio {public}\n\
+             sixth namespaces=\"ionfolio\"\",valid-after=\"20260101Z\" {public}"
         );
         let roster = Roster::parse(text.as_bytes());
         assert_eq!(roster.print(), text.as_bytes());
-        assert_eq!(roster.unread_lines().collect::<Vec<_>>(), [4, 5, 6]);
+        assert_eq!(roster.unread_lines().collect::<Vec<_>>(), [4, 5, 6, 8, 9]);
         let signers: Vec<_> = roster
             .enrolments()
             .map(|entry| entry.signer.as_str())

@@ -156,7 +156,7 @@ impl Laboratory {
             record: page.record.as_deref().map(str::as_bytes),
             acts: &acts,
             attachment: &|_: &NotebookPath| page.readings.clone(),
-            defaults: Some(b"defaults"),
+            defaults: Some("temperature: 25 °C\nair: closed\n".as_bytes()),
         };
         let authority = Authority {
             roster: &self.roster,

@@ -1,8 +1,9 @@
 //! What is claimed: the lines of a record.
 //!
-//! The lines are those of the page's `record` fence. One is added to the plain form: `defaults:`, the digest of the
-//! notebook's defaults that bear on the block. A question without its defaults is another question; without the line, a
-//! changed default would show only as a result that recomputes differently, with nothing to say why.
+//! The lines are those of the page's `record` fence. The notebook's defaults that bear on the block belong to what is
+//! claimed: a question without its defaults is another question, and a changed default would show only as a result that
+//! recomputes differently, with nothing to say why. `assumed:` states each of them, for whoever holds the page alone;
+//! `defaults:` is the digest of these lines, and stands alone in records that do not state them.
 //!
 //! Method, equipment and notes have no lines: they stand in the question and are signed with it.
 
@@ -25,6 +26,7 @@ const KEYS: &[&str] = &[
     "attachment",
     "uses",
     "template",
+    "assumed",
     "program",
     "result",
 ];
@@ -79,6 +81,8 @@ pub struct Statement {
     pub uses: Vec<Named<ResultName>>,
     /// The template that rendered the answer.
     pub template: Named<TextLine>,
+    /// The notebook's defaults that bear on the block, in their order, each as `temperature: 25 °C`.
+    pub assumed: Vec<TextLine>,
     /// The program, name and version, that computed the answer.
     pub program: Named<TextLine>,
     /// The answer in one line.
@@ -112,8 +116,11 @@ impl Statement {
         for used in &self.uses {
             lines.line("uses", used);
         }
+        lines.line("template", &self.template);
+        for assumed in &self.assumed {
+            lines.line("assumed", assumed);
+        }
         lines
-            .line("template", &self.template)
             .line("program", &self.program)
             .line("result", &self.result);
         lines.finish()
@@ -127,22 +134,39 @@ impl Statement {
     pub fn parse(bytes: &[u8]) -> Result<Self, LineError> {
         let text = text_of(bytes)?;
         let mut lines = LineReader::new(&text, KIND, KEYS)?;
+        let notebook = lines.take("notebook", NotebookId::new)?;
+        let page = lines.take("page", NotebookPath::new)?;
+        let label = lines.take("label", Label::new)?;
+        let supersedes = supersession(&mut lines)?;
+        let question = lines.take("question", Digest::parse)?;
+        let answer = lines.take("answer", Digest::parse)?;
+        let defaults = lines.optional("defaults", Digest::parse)?;
         let statement = Self {
-            notebook: lines.take("notebook", NotebookId::new)?,
-            page: lines.take("page", NotebookPath::new)?,
-            label: lines.take("label", Label::new)?,
-            supersedes: supersession(&mut lines)?,
-            question: lines.take("question", Digest::parse)?,
-            answer: lines.take("answer", Digest::parse)?,
-            defaults: lines.optional("defaults", Digest::parse)?,
+            notebook,
+            page,
+            label,
+            supersedes,
+            question,
+            answer,
+            defaults,
             attachments: ordered(&mut lines, "attachment", NotebookPath::new)?,
             uses: ordered(&mut lines, "uses", ResultName::parse)?,
             template: lines.take("template", |value| Named::parse(value, TextLine::new))?,
+            assumed: assumed(&mut lines, defaults)?,
             program: lines.take("program", |value| Named::parse(value, TextLine::new))?,
             result: lines.take("result", TextLine::new)?,
         };
         lines.finish()?;
         Ok(statement)
+    }
+
+    /// The digest of the defaults that bear on the block: of the `assumed:` values, a line each, where they are stated.
+    #[must_use]
+    pub fn defaults_digest(&self) -> Option<Digest> {
+        if self.assumed.is_empty() {
+            return self.defaults;
+        }
+        Some(digest_of_defaults(&self.assumed))
     }
 
     /// The record's digest, by which acts and later records name it.
@@ -160,6 +184,25 @@ impl Statement {
         self.uses.dedup();
         self
     }
+}
+
+/// Reads the `assumed:` lines; where `defaults:` stands as well, it must be their digest.
+fn assumed(
+    lines: &mut LineReader<'_>,
+    defaults: Option<Digest>,
+) -> Result<Vec<TextLine>, LineError> {
+    let assumed = lines.many("assumed", TextLine::new)?;
+    let agrees = |digest| digest == digest_of_defaults(&assumed);
+    if assumed.is_empty() || defaults.is_none_or(agrees) {
+        Ok(assumed)
+    } else {
+        Err(lines.faulty("assumed", ValueFault::Defaults))
+    }
+}
+
+fn digest_of_defaults(assumed: &[TextLine]) -> Digest {
+    let lines: Vec<String> = assumed.iter().map(|line| format!("{line}\n")).collect();
+    Digest::of_lines(lines.concat().as_bytes())
 }
 
 fn supersession(lines: &mut LineReader<'_>) -> Result<Option<Supersession>, LineError> {
@@ -251,7 +294,7 @@ pub(super) mod tests {
             }),
             question: digest("question\n"),
             answer: digest("answer\n"),
-            defaults: Some(digest("defaults")),
+            defaults: Some(digest("temperature: 25 °C\nair: closed\n")),
             attachments: vec![Named::new(
                 NotebookPath::new("readings/run 17.csv").unwrap(),
                 digest("1,2\n"),
@@ -261,6 +304,9 @@ pub(super) mod tests {
                 digest("stock"),
             )],
             template: Named::new(TextLine::new("built-in speciation").unwrap(), digest("t")),
+            assumed: ["temperature: 25 °C", "air: closed"]
+                .map(|line| TextLine::new(line).unwrap())
+                .to_vec(),
             program: Named::new(TextLine::new("ionfolio 0.1.0").unwrap(), digest("p")),
             result: TextLine::new("pH 7.20, expanded uncertainty 0.03 (k=2)").unwrap(),
         }
@@ -273,6 +319,7 @@ pub(super) mod tests {
         plain.defaults = None;
         plain.attachments.clear();
         plain.uses.clear();
+        plain.assumed.clear();
         for statement in [full(), plain] {
             let text = statement.print();
             assert_eq!(Statement::parse(text.as_bytes()).as_ref(), Ok(&statement));
@@ -307,6 +354,23 @@ pub(super) mod tests {
                 line: 6,
                 key: "reason"
             })
+        );
+    }
+
+    #[test]
+    fn stated_defaults_agree_with_their_digest() {
+        let digest = |statement: &Statement| statement.defaults_digest();
+        let (stated, mut bare) = (full(), full());
+        bare.assumed.clear();
+        assert_eq!(digest(&stated), stated.defaults);
+        assert_eq!(digest(&bare), stated.defaults);
+        let text = stated.print();
+        let fault = ValueFault::Defaults;
+        let line = 14;
+        let key = "assumed";
+        assert_eq!(
+            Statement::parse(text.replace("closed", "open").as_bytes()),
+            Err(LineError::Value { line, key, fault })
         );
     }
 

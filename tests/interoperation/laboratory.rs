@@ -53,6 +53,7 @@ pub(crate) fn statement() -> Statement {
         attachments: Vec::new(),
         uses: Vec::new(),
         template: Named::new(line("built-in speciation"), Digest::of_file(b"template")),
+        assumed: Vec::new(),
         program: Named::new(line("ionfolio 0.1.0"), Digest::of_file(b"program")),
         result: line("pH 7.20, expanded uncertainty 0.03 (k=2)"),
     }
