@@ -5,101 +5,15 @@
     reason = "a test may stop where it cannot go on, and its draws need no fixed bytes"
 )]
 
-use ionfolio::equilibrium::{
-    ActivityModel, ComponentIndex, Solver, Species, System, Total, Totals, Water,
-};
-use rand_chacha::ChaCha8Rng;
-use rand_chacha::rand_core::{RngCore, SeedableRng};
+use crate::arbitrary_solution::Draw;
+use ionfolio::equilibrium::{ActivityModel, Solver, Species, System, Total, Totals, Water};
 
 /// Problems in one run of the tests; every one must be solved and certified.
 const PROBLEMS: usize = 20_000;
 
-/// A random problem: 1 to 8 acids of 1 to 6 protons, 1e-12 to 5 mol/kg, pK -2 to 15, neutralised at random, exact equivalence included.
-struct Problem {
-    system: System,
-    totals: Totals,
-    acids: Vec<ComponentIndex>,
-    counter: ComponentIndex,
-}
-
-struct Draw(ChaCha8Rng);
-
-impl Draw {
-    fn unit(&mut self) -> f64 {
-        f64::from(self.0.next_u32()) / f64::from(u32::MAX)
-    }
-
-    fn between(&mut self, low: f64, high: f64) -> f64 {
-        low + (high - low) * self.unit()
-    }
-
-    fn below(&mut self, count: u32) -> u32 {
-        self.0.next_u32() % count
-    }
-
-    fn concentration(&mut self) -> f64 {
-        10_f64.powf(self.between(-12.0, 0.7))
-    }
-
-    fn problem(&mut self, model: ActivityModel) -> Problem {
-        let water = Water::at(273.15 + self.between(0.0, 100.0)).unwrap();
-        let mut builder = System::builder(water, model);
-        let mut acids = Vec::new();
-        let mut protons = Vec::new();
-        for _ in 0..=self.below(8) {
-            let steps = 1 + i8::try_from(self.below(6)).unwrap();
-            // Charges within ±3, where the solution with Davies' equation is proven to be unique.
-            let top = (steps - 3).max(0) + i8::try_from(self.below(2)).unwrap();
-            let mut pks: Vec<f64> = (0..steps).map(|_| self.between(-2.0, 15.0)).collect();
-            pks.sort_by(|a, b| b.total_cmp(a));
-            let mut species = vec![Species::new(top - steps, 0, 0.0)];
-            let mut lg_beta = 0.0;
-            for (taken, pk) in (1..).zip(&pks) {
-                lg_beta += pk;
-                species.push(Species::new(top - steps + taken, taken, lg_beta));
-            }
-            acids.push(builder.ligand(&species));
-            protons.push(i32::from(steps - top));
-        }
-        let sodium = builder.inert(1, None);
-        let chloride = builder.inert(-1, None);
-        let system = builder.build().unwrap();
-        let mut totals = Totals::none(&system);
-        for (acid, neutral) in acids.iter().zip(&protons) {
-            let amount = Total::from_f64(self.concentration());
-            totals.set(*acid, amount);
-            totals.add_protons(amount * f64::from(*neutral));
-            match self.below(3) {
-                0 => {
-                    // Neutralised exactly by some whole number of steps.
-                    let equivalents = f64::from(self.below(4));
-                    totals.add(sodium, amount * equivalents);
-                    totals.add_protons(amount * -equivalents);
-                }
-                1 => {
-                    let base = Total::from_f64(self.concentration());
-                    totals.add(sodium, base);
-                    totals.add_protons(-base);
-                }
-                _ => {
-                    let acid = Total::from_f64(self.concentration());
-                    totals.add(chloride, acid);
-                    totals.add_protons(acid);
-                }
-            }
-        }
-        Problem {
-            system,
-            totals,
-            acids,
-            counter: sodium,
-        }
-    }
-}
-
 #[test]
 fn every_random_problem_is_solved_and_certified() {
-    let mut draw = Draw(ChaCha8Rng::seed_from_u64(20_261_103));
+    let mut draw = Draw::from_seed(20_261_103);
     let mut failures = Vec::new();
     for number in 0..PROBLEMS {
         let model = [
@@ -107,7 +21,7 @@ fn every_random_problem_is_solved_and_certified() {
             ActivityModel::Ideal,
             ActivityModel::Guentelberg,
         ][number % 3];
-        let problem = draw.problem(model);
+        let problem = draw.solution(model).problem();
         match Solver::new(&problem.system).solve(&problem.totals, None) {
             Ok(solution) => {
                 let certificate = solution.certificate();
@@ -128,12 +42,12 @@ fn every_random_problem_is_solved_and_certified() {
 
 #[test]
 fn warm_and_cold_starts_agree() {
-    let mut draw = Draw(ChaCha8Rng::seed_from_u64(7));
+    let mut draw = Draw::from_seed(7);
     for _ in 0..500 {
-        let problem = draw.problem(ActivityModel::Davies);
+        let problem = draw.solution(ActivityModel::Davies).problem();
         let mut solver = Solver::new(&problem.system);
         let cold = solver.solve(&problem.totals, None).unwrap();
-        let elsewhere = draw.problem(ActivityModel::Davies);
+        let elsewhere = draw.solution(ActivityModel::Davies).problem();
         let other = Solver::new(&elsewhere.system)
             .solve(&elsewhere.totals, None)
             .unwrap();
@@ -150,15 +64,16 @@ fn warm_and_cold_starts_agree() {
 
 #[test]
 fn sensitivities_are_the_derivatives() {
-    let mut draw = Draw(ChaCha8Rng::seed_from_u64(99));
+    let mut draw = Draw::from_seed(99);
     let mut checked = 0;
     for _ in 0..300 {
-        let problem = draw.problem(ActivityModel::Davies);
+        let problem = draw.solution(ActivityModel::Davies).problem();
+        let counter = problem.components[problem.components.len() - 2];
         let solution = Solver::new(&problem.system)
             .solve(&problem.totals, None)
             .unwrap();
         let sensitivities = solution.sensitivities(&problem.system);
-        for (place, acid) in problem.acids.iter().enumerate() {
+        for (place, acid) in problem.components.iter().enumerate() {
             let amount = problem.totals.of(*acid).to_f64();
             let by_total = richardson(|step| {
                 let mut totals = problem.totals.clone();
@@ -170,7 +85,7 @@ fn sensitivities_are_the_derivatives() {
             });
             checked += compare(by_total, sensitivities.by_component[place] * amount);
         }
-        for species in problem.system.species_of(problem.acids[0]).skip(1) {
+        for species in problem.system.species_of(problem.components[0]).skip(1) {
             let row = species.place();
             let by_beta = richardson(|step| {
                 let mut system = problem.system.clone();
@@ -184,16 +99,15 @@ fn sensitivities_are_the_derivatives() {
         }
         let capacity = richardson(|step| {
             let mut totals = problem.totals.clone();
-            let added = Total::from_f64(step * 1e-2 * problem.totals.of(problem.counter).to_f64());
-            totals.add(problem.counter, added);
+            let added = Total::from_f64(step * 1e-2 * problem.totals.of(counter).to_f64());
+            totals.add(counter, added);
             totals.add_protons(-added);
             Solver::new(&problem.system)
                 .solve(&totals, Some(solution.start()))
                 .unwrap()
                 .ph()
         });
-        let expected =
-            1e-2 * problem.totals.of(problem.counter).to_f64() / sensitivities.buffer_capacity;
+        let expected = 1e-2 * problem.totals.of(counter).to_f64() / sensitivities.buffer_capacity;
         checked += compare(capacity, expected);
     }
     assert!(
