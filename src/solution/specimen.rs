@@ -87,6 +87,7 @@ pub(super) fn statement(problem: Problem, celsius: &str) -> Statement {
             uncertainty: stated(UncertaintyMode::Budget),
             accepted: BTreeSet::new(),
             pkw: None,
+            carbonate: None,
         },
         problem,
         hand_value: None,
