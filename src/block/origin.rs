@@ -62,6 +62,16 @@ pub(super) fn substance<'s>(
     let name = name.into();
     match reader.catalogue.find(name.text()) {
         Ok(form) => Some(Arc::clone(form)),
+        Err(error) if error.ambiguous => {
+            let several = Diagnostic::error(
+                Rule::UnknownSubstance,
+                name.span(),
+                format!("`{}` is the formula of several substances", name.text()),
+            )
+            .expecting(format!("one of them by name: {}", error.names.join(", ")));
+            reader.diagnostics.push(several);
+            None
+        }
         Err(error) => {
             let diagnostic = Diagnostic::error(
                 Rule::UnknownSubstance,

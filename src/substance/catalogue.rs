@@ -1,13 +1,14 @@
 //! The library as it is searched: embedded, and overlaid value by value by a laboratory's or a block's own constants.
 
 use crate::substance::names::folded;
+use crate::substance::reaction::{StoredGas, StoredPolynuclear};
 use crate::substance::stored::hazards;
 use crate::substance::{
-    Component, Constant, Form, Formula, InertIon, LibraryError, Ligand, StoredConstants,
-    StoredForm, StoredIon, StoredSubstance,
+    Component, Constant, Form, Formula, GasSolubility, InertIon, LibraryError, Ligand, Polynuclear,
+    StoredConstants, StoredForm, StoredIon, StoredSubstance,
 };
 use serde::Deserialize;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 use std::sync::{Arc, OnceLock};
 
 /// The library: every ligand, ion and form, found by name, synonym, formula or CAS number.
@@ -16,22 +17,42 @@ pub struct Catalogue {
     ligands: BTreeMap<String, Arc<Ligand>>,
     ions: BTreeMap<String, Arc<InertIon>>,
     forms: BTreeMap<String, Arc<Form>>,
-    /// Folded spelling to the form's name.
+    /// Folded spelling to the form's name: names, synonyms, CAS numbers, symbols of ions.
     index: BTreeMap<String, String>,
+    /// Folded formula to the names of all forms that have it.
+    formulas: BTreeMap<String, BTreeSet<String>>,
+    gases: Vec<GasSolubility>,
+    polynuclear: Vec<Polynuclear>,
     water: Option<Constant>,
 }
 
-/// Nothing of that name is in the library.
+/// No one substance of the library is meant.
 #[derive(Clone, Debug, PartialEq, Eq, thiserror::Error)]
-#[error("no substance {query:?} in the library")]
+#[error("{}", self.sentence())]
 pub struct NotFound {
     /// What was looked for.
     pub query: String,
-    /// Every name that could have been meant, for a search of the nearest.
+    /// Every name that could have been meant, for a search of the nearest; where `ambiguous`, the substances that share the formula.
     pub names: Vec<String>,
+    /// Whether it is the formula of several substances, which `names` then lists.
+    pub ambiguous: bool,
 }
 
-const FILES: [(&str, &str); 12] = [
+impl NotFound {
+    fn sentence(&self) -> String {
+        if self.ambiguous {
+            let names = self.names.join(", ");
+            format!(
+                "{:?} is the formula of several substances: {names}",
+                self.query
+            )
+        } else {
+            format!("no substance {:?} in the library", self.query)
+        }
+    }
+}
+
+const FILES: [(&str, &str); 14] = [
     ("amines.yaml", include_str!("data/amines.yaml")),
     ("amino_acids.yaml", include_str!("data/amino_acids.yaml")),
     (
@@ -41,6 +62,10 @@ const FILES: [(&str, &str); 12] = [
     (
         "complexing_acids.yaml",
         include_str!("data/complexing_acids.yaml"),
+    ),
+    (
+        "dissolved_gases.yaml",
+        include_str!("data/dissolved_gases.yaml"),
     ),
     ("inert_ions.yaml", include_str!("data/inert_ions.yaml")),
     (
@@ -56,6 +81,7 @@ const FILES: [(&str, &str); 12] = [
         include_str!("data/organic_salts.yaml"),
     ),
     ("phenols.yaml", include_str!("data/phenols.yaml")),
+    ("polyborates.yaml", include_str!("data/polyborates.yaml")),
     ("single_ions.yaml", include_str!("data/single_ions.yaml")),
     (
         "strong_electrolytes.yaml",
@@ -76,6 +102,10 @@ struct LibraryFile {
     ions: Vec<StoredIon>,
     #[serde(default)]
     forms: Vec<StoredForm>,
+    #[serde(default)]
+    gases: Vec<StoredGas>,
+    #[serde(default)]
+    polynuclear: Vec<StoredPolynuclear>,
 }
 
 impl Catalogue {
@@ -91,17 +121,32 @@ impl Catalogue {
             .map_err(Clone::clone)
     }
 
-    /// The form that a name, synonym, formula or CAS number means.
+    /// The form that a name, synonym, formula or CAS number means; an ion alone also by its symbol.
+    ///
+    /// A name goes before a formula. A formula that several forms have means none of them.
     ///
     /// # Errors
-    /// [`NotFound`] with every known name.
+    /// [`NotFound`] with every known name, or with those that share the formula.
     pub fn find(&self, query: &str) -> Result<&Arc<Form>, NotFound> {
+        let spelling = folded(query);
+        let sharing = || self.formulas.get(&spelling).into_iter().flatten();
+        let mut only = sharing();
+        let by_formula = only.next().filter(|_| only.next().is_none());
         self.index
-            .get(&folded(query))
+            .get(&spelling)
+            .or(by_formula)
             .and_then(|name| self.forms.get(name))
-            .ok_or_else(|| NotFound {
-                query: query.to_owned(),
-                names: self.spellings(),
+            .ok_or_else(|| {
+                let ambiguous = sharing().next().is_some();
+                NotFound {
+                    query: query.to_owned(),
+                    names: if ambiguous {
+                        sharing().cloned().collect()
+                    } else {
+                        self.spellings()
+                    },
+                    ambiguous,
+                }
             })
     }
 
@@ -125,6 +170,23 @@ impl Catalogue {
     /// All forms, by name.
     pub fn forms(&self) -> impl Iterator<Item = &Arc<Form>> {
         self.forms.values()
+    }
+
+    /// The inert ion of that name.
+    pub fn ion(&self, name: &str) -> Option<&Arc<InertIon>> {
+        self.ions.get(name)
+    }
+
+    /// Gases with Henry's constant.
+    pub fn gases(&self) -> impl Iterator<Item = &GasSolubility> {
+        self.gases.iter()
+    }
+
+    /// Species of several units of a ligand.
+    pub fn polynuclear(&self, ligand: &str) -> impl Iterator<Item = &Polynuclear> {
+        self.polynuclear
+            .iter()
+            .filter(move |species| species.ligand == ligand)
     }
 
     /// The user's own pKw, where one was stated; otherwise water follows its formulation.
@@ -193,16 +255,7 @@ impl Catalogue {
             step.others.insert(0, library);
         }
         ligand.own = true;
-        if stored.states.len() == ligand.states.len() {
-            ligand.states.clone_from(&stored.states);
-        }
-        if !stored.ion_sizes.is_empty() {
-            let own = StoredSubstance {
-                charge: Some(known.charge),
-                ..stored.clone()
-            };
-            ligand.ion_sizes = own.ligand(true)?.ion_sizes;
-        }
+        stored.dress(&mut ligand)?;
         self.ligands.insert(ligand.name.clone(), Arc::new(ligand));
         Ok(())
     }
@@ -253,7 +306,7 @@ impl Catalogue {
     fn insert_form(&mut self, form: Form) {
         let spellings = std::iter::once(form.name.as_str())
             .chain(form.synonyms.iter().map(String::as_str))
-            .chain(form.formula.as_ref().map(Formula::text))
+            .chain(form.ion_symbol())
             .chain(form.cas.as_deref());
         for spelling in spellings {
             self.index
@@ -261,6 +314,10 @@ impl Catalogue {
                 .or_insert_with(|| form.name.clone());
         }
         self.index.insert(folded(&form.name), form.name.clone());
+        if let Some(formula) = &form.formula {
+            let sharing = self.formulas.entry(folded(formula.text())).or_default();
+            sharing.insert(form.name.clone());
+        }
         self.forms.insert(form.name.clone(), Arc::new(form));
     }
 
@@ -318,6 +375,12 @@ fn read_files() -> Result<Catalogue, LibraryError> {
             catalogue.put_substance(substance, false)?;
         }
         forms.extend(read.forms);
+        for gas in &read.gases {
+            catalogue.gases.push(gas.gas()?);
+        }
+        for species in &read.polynuclear {
+            catalogue.polynuclear.push(species.polynuclear()?);
+        }
     }
     for form in &forms {
         catalogue.put_form(form)?;

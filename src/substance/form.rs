@@ -60,6 +60,24 @@ impl Form {
         i32::from(self.charge) - components
     }
 
+    /// The symbol of an ion given alone, such as `HPO₄²⁻`: the name of the one state that it is.
+    pub(super) fn ion_symbol(&self) -> Option<&str> {
+        let [(component, 1)] = self.contains.as_slice() else {
+            return None;
+        };
+        if self.charge == 0 {
+            return None;
+        }
+        match component {
+            Component::Ion(ion) => Some(&ion.symbol),
+            Component::Ligand(ligand) => {
+                let protons = usize::try_from(self.protons()).ok()?;
+                let state = ligand.steps.len().checked_sub(protons)?;
+                ligand.states.get(state).map(String::as_str)
+            }
+        }
+    }
+
     /// The ligands in it.
     pub fn ligands(&self) -> impl Iterator<Item = &Arc<Ligand>> {
         self.contains
@@ -70,11 +88,13 @@ impl Form {
             })
     }
 
-    /// Cautions of the substance and of its ligands, each once.
+    /// Cautions of the substance and of its ligands, each once; a salt has not all of those of its acid or base.
     pub fn all_hazards(&self) -> Vec<Hazard> {
         let mut hazards = self.hazards.clone();
         for ligand in self.ligands() {
-            hazards.extend(ligand.hazards.iter().copied());
+            let parent = ligand.name == self.name;
+            let carried = ligand.hazards.iter().copied();
+            hazards.extend(carried.filter(|hazard| parent || hazard.clings_to_salts()));
         }
         hazards.sort_unstable();
         hazards.dedup();

@@ -81,8 +81,11 @@ impl Formula {
     /// The stated uncertainty of each atomic weight is taken as the half width of a rectangular distribution, as in EURACHEM/CITAC QUAM,
     /// example A1 (recalled); atoms of one element are fully correlated, elements are not.
     pub fn molar_mass_uncertainty(&self) -> f64 {
-        let squares = self.sum(|weight, count| (weight.uncertainty * count).powi_two() / 3.0);
-        squares.sqrt()
+        let variance = self.sum(|weight, count| {
+            let half_width = weight.uncertainty * count;
+            half_width * half_width / 3.0
+        });
+        variance.sqrt()
     }
 
     fn sum(&self, term: impl Fn(&element::AtomicWeight, f64) -> f64) -> f64 {
@@ -90,16 +93,6 @@ impl Formula {
             .iter()
             .filter_map(|(symbol, count)| Some(term(element::weight(symbol)?, f64::from(*count))))
             .sum()
-    }
-}
-
-trait PowiTwo {
-    fn powi_two(self) -> f64;
-}
-
-impl PowiTwo for f64 {
-    fn powi_two(self) -> f64 {
-        self * self
     }
 }
 

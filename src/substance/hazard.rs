@@ -19,6 +19,7 @@ pub struct ReleasedGas {
 )]
 pub enum Hazard {
     StrongAcid,
+    CorrosiveAcid,
     StrongBase,
     HydrofluoricAcid,
     Cyanide,
@@ -37,12 +38,16 @@ pub enum Hazard {
     Amine,
     Borate,
     Barium,
+    Hydroxylamine,
+    Toxic,
+    Harmful,
 }
 
 impl Hazard {
     /// Every hazard with the word that a file uses for it.
-    pub const WORDS: [(&'static str, Self); 19] = [
+    pub const WORDS: [(&'static str, Self); 23] = [
         ("strong acid", Self::StrongAcid),
+        ("corrosive acid", Self::CorrosiveAcid),
         ("strong base", Self::StrongBase),
         ("hydrofluoric acid", Self::HydrofluoricAcid),
         ("cyanide", Self::Cyanide),
@@ -61,6 +66,9 @@ impl Hazard {
         ("amine", Self::Amine),
         ("borate", Self::Borate),
         ("barium", Self::Barium),
+        ("hydroxylamine", Self::Hydroxylamine),
+        ("toxic", Self::Toxic),
+        ("harmful", Self::Harmful),
     ];
 
     /// The word that a file uses.
@@ -76,6 +84,9 @@ impl Hazard {
         match self {
             Self::StrongAcid => {
                 "Corrosive when concentrated; add the acid to the water, slowly, never the reverse."
+            }
+            Self::CorrosiveAcid => {
+                "The concentrated acid burns skin and eyes and its vapour irritates; use a fume hood, add the acid to the water."
             }
             Self::StrongBase => {
                 "Corrosive; dissolving and diluting give off heat. Protect the eyes; add to water in portions."
@@ -118,7 +129,48 @@ impl Hazard {
             Self::Amine => "Amine: corrosive or irritant when concentrated; use a fume hood.",
             Self::Borate => "Borates: may harm fertility; avoid dust.",
             Self::Barium => "Soluble barium compounds are toxic.",
+            Self::Hydroxylamine => {
+                "Hydroxylamine and its salts: toxic, may explode when heated or dry with metal ions; keep cool and clean."
+            }
+            Self::Toxic => "Toxic; avoid skin contact and dust or vapour.",
+            Self::Harmful => "Harmful if swallowed or on the skin; avoid dust.",
         }
+    }
+
+    /// Hazard statements of the Globally Harmonized System that commonly stand on the label of the concentrated or solid substance.
+    ///
+    /// From memory; strength and supplier change them, so the safety data sheet decides.
+    pub fn statements(self) -> &'static [&'static str] {
+        match self {
+            Self::StrongAcid | Self::StrongBase | Self::CorrosiveAcid => &["H290", "H314"],
+            Self::HydrofluoricAcid => &["H300", "H310", "H330", "H314"],
+            Self::Cyanide | Self::Azide => &["H300", "H310", "H330", "H410"],
+            Self::Sulfide => &["H301", "H314", "H400"],
+            Self::Hypochlorite => &["H314", "H410"],
+            Self::Sulfite => &["H302", "H318"],
+            Self::Carbonate => &["H319"],
+            Self::Nitrite => &["H272", "H301", "H319", "H400"],
+            Self::Chromate => &["H317", "H340", "H350", "H410"],
+            Self::Peroxide => &["H271", "H302", "H314", "H332"],
+            Self::Perchlorate => &["H271"],
+            Self::Arsenic => &["H301", "H331", "H350", "H410"],
+            Self::Phenol => &["H301", "H311", "H331", "H314", "H341"],
+            Self::Ammonia => &["H314", "H335", "H400"],
+            Self::Amine => &["H302", "H314", "H335"],
+            Self::Borate => &["H360FD"],
+            Self::Barium => &["H301", "H332"],
+            Self::Hydroxylamine => &["H290", "H302", "H312", "H317", "H351", "H400"],
+            Self::Toxic => &["H301"],
+            Self::Harmful => &["H302", "H312"],
+        }
+    }
+
+    /// Whether salts of the substance carry the caution too: sodium acetate is no corrosive acid, sodium cyanide is a cyanide.
+    pub(super) fn clings_to_salts(self) -> bool {
+        !matches!(
+            self,
+            Self::StrongAcid | Self::CorrosiveAcid | Self::StrongBase | Self::Amine | Self::Phenol
+        )
     }
 
     /// The gas that acidifying sets free, if any.
@@ -134,5 +186,23 @@ impl Hazard {
             _ => return None,
         };
         Some(ReleasedGas { name, toxic })
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn words_sentences_and_statements_are_whole() {
+        for (word, hazard) in Hazard::WORDS {
+            assert_eq!(hazard.word(), word);
+            assert!(hazard.sentence().ends_with('.'), "{word}");
+            assert!(
+                hazard.statements().iter().all(|code| code.starts_with('H')),
+                "{word}"
+            );
+            assert!(!hazard.statements().is_empty(), "{word}");
+        }
     }
 }

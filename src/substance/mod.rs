@@ -12,7 +12,9 @@ mod formula;
 mod hazard;
 mod ligand;
 mod names;
+mod reaction;
 mod stored;
+mod stored_pk;
 mod written;
 
 #[cfg(test)]
@@ -24,7 +26,7 @@ pub use form::{Component, Form};
 pub use formula::{Formula, FormulaError};
 pub use hazard::{Hazard, ReleasedGas};
 pub use ligand::{InertIon, Ligand};
-pub use stored::{
-    LibraryError, StoredConstants, StoredEquation, StoredForm, StoredIon, StoredPk, StoredSubstance,
-};
+pub use reaction::{GasSolubility, Polynuclear};
+pub use stored::{LibraryError, StoredConstants, StoredForm, StoredIon, StoredSubstance};
+pub use stored_pk::{StoredEquation, StoredPk};
 pub use written::written;

@@ -1,13 +1,20 @@
 //! How names, formulas and registry numbers are compared, and how states are named.
 
-/// One spelling for comparison: lower case, plain digits, one kind of hydrate dot, single spaces.
+/// One spelling for comparison: lower case, plain digits and charges, one kind of hydrate dot, single spaces.
 pub(super) fn folded(text: &str) -> String {
     let mut out = String::with_capacity(text.len());
     for c in text.trim().chars() {
         match c {
             '₀'..='₉' => out.push(digit(c, '₀')),
             '·' | '∙' | '•' | '*' | '⋅' => out.push('.'),
-            '‐' | '‑' | '–' | '−' => out.push('-'),
+            '‐' | '‑' | '–' | '−' | '⁻' => out.push('-'),
+            '⁺' => out.push('+'),
+            '⁰' | '⁴'..='⁹' => out.push(digit(c, '⁰')),
+            '¹' => out.push('1'),
+            '²' => out.push('2'),
+            '³' => out.push('3'),
+            '^' => {}
+            '’' => out.push('\''),
             c if c.is_whitespace() || c == '_' => {
                 if !out.ends_with(' ') {
                     out.push(' ');
@@ -95,6 +102,7 @@ mod tests {
     #[test]
     fn spellings_fold_to_one() {
         assert_eq!(folded("NaH₂PO₄ · 2 H₂O"), folded("nah2po4.2 h2o"));
+        assert_eq!(folded("HPO₄²⁻"), folded("HPO4^2-"));
         assert_eq!(folded("  Sodium   Chloride "), "sodium chloride");
     }
 

@@ -3,10 +3,8 @@
 //! The keys are those of the block language. Figures are texts, so that their digits stay.
 
 use crate::quantity::Decimal;
-use crate::substance::{
-    Basis, Constant, EquationForm, Hazard, InertIon, Kind, Ligand, PkEquation, Step, ThermalData,
-    names,
-};
+use crate::substance::stored_pk::{figure, optional};
+use crate::substance::{Hazard, InertIon, Ligand, StoredPk, names};
 use serde::{Deserialize, Serialize};
 use std::collections::BTreeMap;
 
@@ -119,79 +117,6 @@ pub struct StoredSubstance {
     pub pka: Vec<StoredPk>,
 }
 
-/// One value of a step as stored.
-#[derive(Clone, Debug, Default, PartialEq, Eq, Deserialize, Serialize)]
-#[serde(deny_unknown_fields)]
-#[expect(
-    missing_docs,
-    reason = "the fields are the keys of the block language, whose table documents them"
-)]
-pub struct StoredPk {
-    pub value: String,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub uncertainty: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub kind: Option<String>,
-    #[serde(
-        rename = "ionic strength",
-        default,
-        skip_serializing_if = "Option::is_none"
-    )]
-    pub ionic_strength: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub medium: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub temperature: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub enthalpy: Option<String>,
-    #[serde(
-        rename = "heat capacity",
-        default,
-        skip_serializing_if = "Option::is_none"
-    )]
-    pub heat_capacity: Option<String>,
-    #[serde(
-        rename = "thermal source",
-        default,
-        skip_serializing_if = "Option::is_none"
-    )]
-    pub thermal_source: Option<String>,
-    #[serde(
-        rename = "thermal basis",
-        default,
-        skip_serializing_if = "Option::is_none"
-    )]
-    pub thermal_basis: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub equation: Option<StoredEquation>,
-    pub source: String,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub locator: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub basis: Option<String>,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub note: Option<String>,
-    #[serde(default, skip_serializing_if = "Vec::is_empty")]
-    pub others: Vec<Self>,
-}
-
-/// An equation pK(T) as stored.
-#[derive(Clone, Debug, Default, PartialEq, Eq, Deserialize, Serialize)]
-#[serde(deny_unknown_fields)]
-#[expect(
-    missing_docs,
-    reason = "the fields are the keys of the block language, whose table documents them"
-)]
-pub struct StoredEquation {
-    pub form: String,
-    pub coefficients: Vec<String>,
-    pub from: String,
-    pub to: String,
-    pub source: String,
-    #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub basis: Option<String>,
-}
-
 /// An inert ion as stored.
 #[derive(Clone, Debug, Default, PartialEq, Eq, Deserialize, Serialize)]
 #[serde(deny_unknown_fields)]
@@ -257,124 +182,48 @@ impl StoredSubstance {
         } else {
             names::states(self.symbol.as_deref().unwrap_or(name), charge, steps.len())
         };
-        let mut ion_sizes = Vec::new();
-        for index in 0..states.len() {
-            let text = self.ion_sizes.get(index).map_or("-", String::as_str);
-            ion_sizes.push(if text == "-" {
-                None
-            } else {
-                Some(figure(name, text)?)
-            });
-        }
         Ok(Ligand {
             name: name.clone(),
             charge,
+            ion_sizes: self.ion_sizes(states.len())?,
             steps,
             states,
-            ion_sizes,
             hazards: hazards(name, &self.hazards)?,
             own,
         })
     }
 }
 
-impl StoredPk {
-    /// The step that the entry describes.
-    pub(super) fn step(&self, name: &str, own: bool) -> Result<Step, LibraryError> {
-        Ok(Step {
-            preferred: self.constant(name, own)?,
-            others: self
-                .others
-                .iter()
-                .map(|other| other.constant(name, own))
-                .collect::<Result<_, _>>()?,
-        })
-    }
-
-    fn constant(&self, name: &str, own: bool) -> Result<Constant, LibraryError> {
-        let temperature_c = match &self.temperature {
-            Some(text) => figure(name, text.trim_end_matches("°C").trim())?,
-            None => Decimal::whole(25),
-        };
-        Ok(Constant {
-            pk: figure(name, &self.value)?,
-            uncertainty: optional(name, self.uncertainty.as_deref())?,
-            kind: self.kind(name)?,
-            temperature_c,
-            thermal: self.thermal(name, own)?,
-            equation: self
-                .equation
-                .as_ref()
-                .map(|e| e.equation(name, own))
-                .transpose()?,
-            source: self.source.clone(),
-            locator: self.locator.clone(),
-            basis: basis(name, self.basis.as_deref(), own)?,
-            note: self.note.clone(),
-        })
-    }
-
-    fn kind(&self, name: &str) -> Result<Kind, LibraryError> {
-        match (self.kind.as_deref(), &self.ionic_strength) {
-            (None | Some("thermodynamic"), None) => Ok(Kind::Thermodynamic),
-            (Some("thermodynamic"), Some(text)) if figure(name, text)?.is_zero() => {
-                Ok(Kind::Thermodynamic)
-            }
-            (None | Some("conditional"), Some(text)) => Ok(Kind::Conditional {
-                ionic_strength: figure(name, text)?,
-                medium: self.medium.clone(),
-            }),
-            (Some("unstated"), _) => Ok(Kind::Unstated),
-            (Some(word), _) => Err(LibraryError::Word {
-                name: name.to_owned(),
-                word: word.to_owned(),
-            }),
+impl StoredSubstance {
+    /// Lays the names of states, ion sizes and hazards that are given over a ligand of the library.
+    pub(super) fn dress(&self, ligand: &mut Ligand) -> Result<(), LibraryError> {
+        let steps = ligand.steps.len();
+        if self.states.len() == ligand.states.len() {
+            ligand.states.clone_from(&self.states);
+        } else if let Some(symbol) = &self.symbol {
+            ligand.states = names::states(symbol, ligand.charge, steps);
         }
+        if !self.ion_sizes.is_empty() {
+            ligand.ion_sizes = self.ion_sizes(steps + 1)?;
+        }
+        ligand
+            .hazards
+            .extend(hazards(&self.substance, &self.hazards)?);
+        ligand.hazards.sort_unstable();
+        ligand.hazards.dedup();
+        Ok(())
     }
 
-    fn thermal(&self, name: &str, own: bool) -> Result<Option<ThermalData>, LibraryError> {
-        let Some(enthalpy) = &self.enthalpy else {
-            return Ok(None);
-        };
-        Ok(Some(ThermalData {
-            enthalpy: figure(name, enthalpy)?,
-            heat_capacity: optional(name, self.heat_capacity.as_deref())?,
-            source: self
-                .thermal_source
-                .clone()
-                .unwrap_or_else(|| self.source.clone()),
-            basis: basis(
-                name,
-                self.thermal_basis.as_deref().or(self.basis.as_deref()),
-                own,
-            )?,
-        }))
-    }
-}
-
-impl StoredEquation {
-    fn equation(&self, name: &str, own: bool) -> Result<PkEquation, LibraryError> {
-        let known = EquationForm::FORMS
-            .iter()
-            .find(|(text, _, count)| *text == self.form && *count == self.coefficients.len());
-        let Some((_, form, _)) = known else {
-            return Err(LibraryError::Word {
-                name: name.to_owned(),
-                word: self.form.clone(),
-            });
-        };
-        Ok(PkEquation {
-            form: *form,
-            coefficients: self
-                .coefficients
-                .iter()
-                .map(|text| figure(name, text))
-                .collect::<Result<_, _>>()?,
-            from_c: figure(name, &self.from)?,
-            to_c: figure(name, &self.to)?,
-            source: self.source.clone(),
-            basis: basis(name, self.basis.as_deref(), own)?,
-        })
+    /// Ion sizes in nm of so many states.
+    fn ion_sizes(&self, states: usize) -> Result<Vec<Option<Decimal>>, LibraryError> {
+        (0..states)
+            .map(
+                |index| match self.ion_sizes.get(index).map(String::as_str) {
+                    None | Some("-") => Ok(None),
+                    Some(text) => figure(&self.substance, text).map(Some),
+                },
+            )
+            .collect()
     }
 }
 
@@ -405,26 +254,4 @@ pub(super) fn hazards(name: &str, words: &[String]) -> Result<Vec<Hazard>, Libra
                 })
         })
         .collect()
-}
-
-fn figure(name: &str, text: &str) -> Result<Decimal, LibraryError> {
-    Decimal::parse(text).map_err(|_error| LibraryError::Figure {
-        name: name.to_owned(),
-        text: text.to_owned(),
-    })
-}
-
-fn optional(name: &str, text: Option<&str>) -> Result<Option<Decimal>, LibraryError> {
-    text.map(|text| figure(name, text)).transpose()
-}
-
-fn basis(name: &str, word: Option<&str>, own: bool) -> Result<Basis, LibraryError> {
-    match word {
-        None if own => Ok(Basis::Stated),
-        None => Ok(Basis::Recalled),
-        Some(word) => Basis::from_word(word).ok_or_else(|| LibraryError::Word {
-            name: name.to_owned(),
-            word: word.to_owned(),
-        }),
-    }
 }

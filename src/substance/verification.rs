@@ -1,7 +1,9 @@
 //! Checks over the whole embedded library.
 
 use crate::substance::names::folded;
-use crate::substance::{Basis, Catalogue, Component, StoredConstants, StoredPk, StoredSubstance};
+use crate::substance::{
+    Basis, Catalogue, Component, Formula, Hazard, Kind, StoredConstants, StoredPk, StoredSubstance,
+};
 use std::collections::BTreeMap;
 
 fn library() -> &'static Catalogue {
@@ -10,8 +12,8 @@ fn library() -> &'static Catalogue {
 
 #[test]
 fn library_has_its_substances() {
-    assert!(library().ligands().count() >= 90);
-    assert!(library().forms().count() >= 200);
+    assert!(library().ligands().count() >= 110);
+    assert!(library().forms().count() >= 300);
 }
 
 #[test]
@@ -46,80 +48,52 @@ fn cas_numbers_have_their_check_digit() {
 }
 
 #[test]
-fn metals_and_halogens_are_as_many_as_the_components() {
+fn elements_are_balanced() {
+    // Parts of a form, its protons and whole water molecules: every element must come out as in its formula.
+    let mut checked = 0;
     for form in library().forms() {
         let Some(formula) = &form.formula else {
             continue;
         };
-        let mut metal: BTreeMap<&str, u32> = BTreeMap::new();
-        for (component, count) in &form.contains {
-            if let Component::Ion(ion) = component {
-                let symbol: String = ion
-                    .symbol
-                    .chars()
-                    .take_while(char::is_ascii_alphabetic)
-                    .collect();
-                if formula.atoms().contains_key(symbol.as_str()) && symbol.len() <= 2 {
-                    *metal
-                        .entry(match symbol.as_str() {
-                            "Na" => "Na",
-                            "K" => "K",
-                            "Li" => "Li",
-                            "Ca" => "Ca",
-                            "Mg" => "Mg",
-                            "Ba" => "Ba",
-                            "Cl" => "Cl",
-                            "Br" => "Br",
-                            "I" => "I",
-                            _ => continue,
-                        })
-                        .or_default() += u32::from(*count);
-                }
-            }
+        let mut left = atoms(formula);
+        for (component, times) in &form.contains {
+            add(&mut left, &parts(component), -i32::from(*times));
         }
-        for (symbol, count) in metal {
-            assert_eq!(
-                formula.atoms().get(symbol),
-                Some(&count),
-                "{}: {symbol}",
-                form.name
-            );
+        add(&mut left, &BTreeMap::from([("H", 1)]), -form.protons());
+        let water = left.get("O").copied().unwrap_or(0);
+        add(&mut left, &BTreeMap::from([("O", 1), ("H", 2)]), -water);
+        left.retain(|_, count| *count != 0);
+        assert!(left.is_empty(), "{}: {left:?} left over", form.name);
+        checked += 1;
+    }
+    assert!(checked >= 270, "{checked}");
+}
+
+/// Element counts of a component: of an ion by its symbol, of a ligand by the formula of its neutral form less the protons.
+fn parts(component: &Component) -> BTreeMap<&'static str, i32> {
+    match component {
+        Component::Ion(ion) => {
+            let symbol = ion.symbol.trim_end_matches(['⁺', '⁻', '²', '³']);
+            atoms(&Formula::parse(symbol).unwrap())
+        }
+        Component::Ligand(ligand) => {
+            let neutral = library().find(&ligand.name).unwrap();
+            let mut parts = atoms(neutral.formula.as_ref().unwrap());
+            add(&mut parts, &BTreeMap::from([("H", 1)]), -neutral.protons());
+            parts
         }
     }
 }
 
-#[test]
-fn salts_are_their_acid_with_hydrogen_exchanged() {
-    // For a salt of one ligand: formula of the neutral acid, less the hydrogen that metal ions replace, plus water and
-    // hydrogen halide. Counted on carbon, nitrogen, phosphorus, sulfur and boron, which neither water nor counter-ions bring.
-    for form in library().forms() {
-        let Some(formula) = &form.formula else {
-            continue;
-        };
-        for element in ["C", "P", "S", "B", "As"] {
-            let mut expected = 0;
-            let mut known = true;
-            for (component, count) in &form.contains {
-                match component {
-                    Component::Ligand(ligand) => {
-                        let acid = library().find(&ligand.name).unwrap();
-                        let atoms = acid
-                            .formula
-                            .as_ref()
-                            .map(|f| f.atoms().get(element).copied().unwrap_or(0));
-                        expected += atoms.unwrap_or(0) * u32::from(*count);
-                    }
-                    Component::Ion(ion) => {
-                        let single = !ion.symbol.contains(|c| ('₀'..='₉').contains(&c));
-                        known &= single && ion.symbol.chars().filter(char::is_ascii).count() <= 2;
-                    }
-                }
-            }
-            if known {
-                let found = formula.atoms().get(element).copied().unwrap_or(0);
-                assert_eq!(found, expected, "{}: {element}", form.name);
-            }
-        }
+fn atoms(formula: &Formula) -> BTreeMap<&'static str, i32> {
+    let count = |count: u32| i32::try_from(count).unwrap();
+    let counts = formula.atoms().iter();
+    counts.map(|(symbol, n)| (*symbol, count(*n))).collect()
+}
+
+fn add(to: &mut BTreeMap<&'static str, i32>, atoms: &BTreeMap<&'static str, i32>, times: i32) {
+    for (symbol, count) in atoms {
+        *to.entry(symbol).or_default() += count * times;
     }
 }
 
@@ -199,9 +173,55 @@ fn own_values_overlay_value_by_value() {
     let step = ligand.steps.first().unwrap();
     assert_eq!(step.preferred.pk.to_string(), "4.7447");
     assert_eq!(step.preferred.basis, Basis::Stated);
+    assert_eq!(step.preferred.kind, Kind::Unstated);
     assert!(
         step.others
             .iter()
             .any(|other| other.pk.to_string() == "4.756")
     );
+}
+
+#[test]
+fn a_formula_of_several_substances_means_none() {
+    for (query, names) in [
+        ("C4H4O4", &["fumaric acid", "maleic acid"][..]),
+        ("C6H8O7", &["citric acid", "isocitric acid"]),
+    ] {
+        let error = library().find(query).unwrap_err();
+        assert!(error.ambiguous, "{query}");
+        assert_eq!(error.names, names, "{query}");
+    }
+    assert_eq!(
+        library().find("C6H8O7·H2O").unwrap().name,
+        "citric acid monohydrate"
+    );
+}
+
+#[test]
+fn ions_are_found_by_their_symbol() {
+    for (query, name) in [
+        ("Na+", "sodium ion"),
+        ("HPO₄²⁻", "hydrogen phosphate ion"),
+        ("H2PO4-", "dihydrogen phosphate ion"),
+        ("SO4^2-", "sulfate ion"),
+        ("NH4+", "ammonium ion"),
+    ] {
+        assert_eq!(library().find(query).unwrap().name, name, "{query}");
+    }
+}
+
+#[test]
+fn salts_do_not_carry_the_cautions_of_the_acid_alone() {
+    let has = |name: &str, hazard| {
+        library()
+            .find(name)
+            .unwrap()
+            .all_hazards()
+            .contains(&hazard)
+    };
+    assert!(has("phosphoric acid", Hazard::StrongAcid));
+    assert!(!has("KH2PO4", Hazard::StrongAcid));
+    assert!(!has("sodium sulfate", Hazard::StrongAcid));
+    assert!(has("sodium cyanide", Hazard::Cyanide));
+    assert!(has("acetic acid", Hazard::CorrosiveAcid));
 }

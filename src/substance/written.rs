@@ -2,8 +2,8 @@
 
 use crate::quantity::Decimal;
 use crate::substance::{
-    Constant, Form, InertIon, Kind, Ligand, PkEquation, StoredForm, StoredIon, StoredPk,
-    StoredSubstance, stored::StoredEquation,
+    Constant, Form, InertIon, Kind, Ligand, PkEquation, StoredEquation, StoredForm, StoredIon,
+    StoredPk, StoredSubstance,
 };
 use serde::Serialize;
 use std::sync::Arc;
