@@ -169,6 +169,7 @@ pub(super) fn titration() -> (Statement, Answer) {
         steepest_ml: Some(volume - 0.01),
     };
     let outcome = TitrationOutcome {
+        unknown_indicators: Vec::new(),
         equivalence_points: vec![
             equivalence("first proton of phosphoric acid", 8.0),
             equivalence("second proton of phosphoric acid", 16.0),

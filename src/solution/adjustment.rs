@@ -1,22 +1,21 @@
 //! A solution moved to a pH, or moved by an addition: how much, in which steps, and what an overshoot means.
 
-use crate::equilibrium::{Solver, Total};
+use crate::equilibrium::Total;
 use crate::problem::{
-    Adjustment, AdjustmentGoal, Composition, Content, ContentAmount, Corrections, Ingredient,
-    Input, InputId, MadeUp, SolutionPortion, Source, Taken, Trace,
+    Adjustment, AdjustmentGoal, Composition, Ingredient, Input, InputId, MadeUp, SolutionPortion,
+    Source, Taken,
 };
-use crate::quantity::{Decimal, Dimension, Measured, RoundingRule, Unit};
+use crate::quantity::{Decimal, Dimension, Measured, Number, RoundingRule, Unit};
 use crate::solution::Unsolvable;
+use crate::solution::adjustment_start::{Start, ph_with};
 use crate::solution::answer::{
-    Addition, AdjustmentOutcome, Answer, Explanation, Outcome, Overshoot,
+    Addition, AdjustmentOutcome, Answer, Assumption, Outcome, Overshoot,
 };
 use crate::solution::assembly::Assembly;
-use crate::solution::comparison::explanations;
 use crate::solution::conclusion::{Bench, Finding};
 use crate::solution::search::{bracket, root};
 use crate::solution::source::{Measure, ingredient, name, taken_id, to_steps};
 use crate::solution::tape::VariableIndex;
-use crate::substance::Catalogue;
 use std::sync::Arc;
 
 /// Volume of one drop in mL where none was stated; common practice.
@@ -43,108 +42,6 @@ pub(super) fn adjusted(bench: &Bench<'_>, task: &Adjustment) -> Result<Answer, U
         },
     };
     moving.conclude(amount)
-}
-
-/// The solution at the start, with the strong acid or base that its measured pH makes one suppose.
-struct Start {
-    composition: Composition,
-    volume: f64,
-    ph: f64,
-    explanations: Vec<Explanation>,
-}
-
-impl Start {
-    fn of(bench: &Bench<'_>, task: &Adjustment) -> Result<Self, Unsolvable> {
-        let assembly = bench.assemble(&task.start)?;
-        let solved = assembly.solve(&assembly.stated())?;
-        let no_volume = || Unsolvable::NoVolume {
-            input: InputId::new("start"),
-        };
-        let volume = assembly.recipe.volume_of(&solved.worked);
-        let volume = volume
-            .filter(|volume| *volume > 0.0)
-            .ok_or_else(no_volume)?;
-        let computed = solved.certified.ph();
-        let Some(measured) = &task.measured_ph else {
-            return Ok(Self {
-                composition: task.start.clone(),
-                volume,
-                ph: computed,
-                explanations: Vec::new(),
-            });
-        };
-        let target = measured.value().base();
-        let composition = supposed(bench, task, target, computed)?;
-        Ok(Self {
-            composition,
-            volume,
-            ph: target,
-            explanations: explanations(&assembly, &solved, target),
-        })
-    }
-}
-
-/// The start with as much strong acid or base as makes its computed pH the measured one.
-fn supposed(
-    bench: &Bench<'_>,
-    task: &Adjustment,
-    target: f64,
-    computed: f64,
-) -> Result<Composition, Unsolvable> {
-    let id = InputId::new("start").within("supposed strong acid or base");
-    let name = if target < computed {
-        "hydrochloric acid"
-    } else {
-        "sodium hydroxide"
-    };
-    let form = Catalogue::embedded()?.find(name);
-    let with = |amount: Decimal| -> Option<Composition> {
-        let mut composition = task.start.clone();
-        let measured = Measured::new(amount, Unit::Mole)?;
-        composition
-            .ingredients
-            .push(Ingredient::Substance(Box::new(Content {
-                id: id.clone(),
-                form: Arc::clone(form.as_ref().ok()?),
-                amount: ContentAmount::Amount(Input::new(id.within("amount"), measured)),
-                corrections: Corrections::default(),
-                trace: Trace::default(),
-            })));
-        Some(composition)
-    };
-    let lost = || Unsolvable::Sources {
-        reason: "the measured pH cannot be explained".to_owned(),
-        input: id.clone(),
-    };
-    let draft = with(Decimal::whole(1)).ok_or_else(lost)?;
-    let assembly = bench.assemble(&draft)?;
-    let index = assembly.variable(&id.within("amount")).ok_or_else(lost)?;
-    let off = |amount: f64| Ok(ph_with(&assembly, index, amount)? - target);
-    match bracket(1e-9, 10.0, off)? {
-        Ok((ends, at_ends)) => {
-            let amount = root(ends, at_ends, off)?;
-            with(Decimal::shortest(amount)).ok_or_else(lost)
-        }
-        Err((first, last)) => Err(Unsolvable::Unreachable {
-            target: format!("{target} (measured)"),
-            lowest: first.min(last) + target,
-            highest: first.max(last) + target,
-            input: task
-                .measured_ph
-                .as_ref()
-                .map_or(id.clone(), |measured| measured.id.clone()),
-        }),
-    }
-}
-
-fn ph_with(assembly: &Assembly, index: VariableIndex, amount: f64) -> Result<f64, Unsolvable> {
-    let mut values = assembly.stated();
-    if let Some(place) = values.get_mut(index.place()) {
-        *place = Total::from_f64(amount);
-    }
-    Ok(assembly
-        .ph(&mut Solver::new(&assembly.system), &values, None)?
-        .0)
 }
 
 /// An adjustment at work: the mixture with the addition as a variable.
@@ -196,7 +93,7 @@ impl<'a> Moving<'a> {
     }
 
     /// The addition that reaches a pH, in L or g.
-    fn reach(&self, target: &Input<crate::quantity::Number>) -> Result<f64, Unsolvable> {
+    fn reach(&self, target: &Input<Number>) -> Result<f64, Unsolvable> {
         let wanted = target.value().base();
         let off = |amount: f64| Ok(self.ph(amount)? - wanted);
         match bracket(1e-6 * self.most(), self.most(), off)? {
@@ -250,7 +147,29 @@ impl<'a> Moving<'a> {
             assembly: self.bench.assemble(&liquid)?,
             outcome: Outcome::Adjustment(Box::new(outcome)),
             liquid,
+            assumptions: self.assumptions(drop),
         })
+    }
+
+    fn assumptions(&self, drop: f64) -> Vec<Assumption> {
+        let assumed = |statement: String| Assumption {
+            statement,
+            alternative: None,
+            cost: None,
+        };
+        let mut list = Vec::new();
+        if self.task.drop.is_none() && self.measure == Measure::Pipetted {
+            list.push(assumed(format!(
+                "A drop is {drop} mL (assumed: common practice)."
+            )));
+        }
+        if self.task.measured_ph.is_some() {
+            list.push(assumed(
+                "The measured pH at the start is taken as true; a strong acid or base beside what was stated makes up for the difference."
+                    .to_owned(),
+            ));
+        }
+        list
     }
 
     /// Change of pH per unit (g, mL) of the addition.
@@ -384,14 +303,11 @@ fn mixed(
 
 #[cfg(test)]
 mod tests {
-    use crate::problem::{
-        Adjustment, AdjustmentGoal, Composition, Corrections, InputId, MadeUp, Problem, Source,
-        SourceKind, Strength, Trace,
-    };
+    use crate::problem::{Adjustment, AdjustmentGoal, Composition, MadeUp, Problem};
     use crate::quantity::Unit;
     use crate::solution::answer::{AdjustmentOutcome, Outcome};
     use crate::solution::solve;
-    use crate::solution::specimen::{form, input, molar, statement};
+    use crate::solution::specimen::{input, molar, statement, stock};
 
     fn tris_to(ph: &str, measured: Option<&str>) -> (AdjustmentOutcome, f64) {
         let task = Adjustment {
@@ -400,19 +316,7 @@ mod tests {
                 ..molar(&[("tris", "0.050")])
             },
             measured_ph: measured.map(|ph| input("start / measured pH", ph, Unit::One)),
-            with: Source {
-                id: InputId::new("with"),
-                kind: SourceKind::Stock {
-                    form: form("hydrochloric acid"),
-                    strength: Strength::Concentration(input(
-                        "with / concentration",
-                        "1.000",
-                        Unit::MolePerLitre,
-                    )),
-                    corrections: Corrections::default(),
-                },
-                trace: Trace::default(),
-            },
+            with: stock("hydrochloric acid", "1.000"),
             back_with: None,
             goal: AdjustmentGoal::Reach(input("target / pH", ph, Unit::One)),
             drop: None,

@@ -1,18 +1,19 @@
 //! A recipe with its tableau: what is solved, again and again, with other values.
 
 use crate::equilibrium::{
-    ActivityModel, Certified, ComponentIndex, Sensitivities, Solver, Species, SpeciesIndex, Start,
-    System, SystemBuilder, Total, Totals, Water, elementary,
+    ActivityModel, Certified, ComponentIndex, Sensitivities, Solver, SpeciesIndex, Start, System,
+    Total, Totals, Water,
 };
 use crate::problem::Conditions;
-use crate::quantity::{Decimal, Dimension};
+use crate::quantity::Dimension;
 use crate::solution::Unsolvable;
 use crate::solution::carbon_dioxide;
-use crate::solution::dissociation::{FoundPk, pk_of};
+use crate::solution::dissociation::FoundPk;
+use crate::solution::draft::{Draft, SpeciesDraft};
 use crate::solution::polyborate;
 use crate::solution::recipe::Recipe;
 use crate::solution::tape::{Node, Worked};
-use crate::substance::{Catalogue, Component, Ligand};
+use crate::substance::{Component, Ligand};
 use std::sync::Arc;
 
 /// Temperature, model, air and pKw under which a recipe is assembled.
@@ -24,6 +25,8 @@ pub(super) struct Setting {
     pub(super) model: ActivityModel,
     /// Partial pressure of CO₂ in atm that the solution is in equilibrium with; closed to air where there is none.
     pub(super) carbon_dioxide: Option<f64>,
+    /// The acid family of dissolved carbon dioxide, where the statement names it.
+    pub(super) carbonate: Option<Arc<Ligand>>,
     /// The user's own pKw at zero ionic strength, at the temperature of the block.
     pub(super) own_pkw: Option<f64>,
 }
@@ -36,6 +39,7 @@ impl Setting {
             temperature,
             model,
             carbon_dioxide: carbon_dioxide::pressure(&conditions.air.value),
+            carbonate: conditions.carbonate.clone(),
             own_pkw: conditions
                 .pkw
                 .as_ref()
@@ -148,19 +152,12 @@ impl Assembly {
     /// [`Unsolvable`] for a temperature or a tableau that cannot be computed with.
     pub(super) fn new(recipe: &Arc<Recipe>, setting: &Setting) -> Result<Self, Unsolvable> {
         let water = setting.water()?;
-        let mut draft = Draft {
-            builder: System::builder(water, setting.model),
-            water,
-            model: setting.model,
-            parts: Vec::new(),
-            species: Vec::new(),
-            pks: Vec::new(),
-        };
+        let mut draft = Draft::new(water, setting.model);
         for entry in &recipe.components {
             draft.put(&entry.component, Some(entry.concentration));
         }
         if let Some(pressure) = setting.carbon_dioxide {
-            draft.hold_carbon_dioxide(pressure)?;
+            draft.hold_carbon_dioxide(pressure, setting.carbonate.as_ref())?;
         }
         let polyborates = polyborate::add(&mut draft.builder, &draft.parts, &draft.pks, &water);
         let Draft {
@@ -351,99 +348,6 @@ impl Assembly {
                 count * by.copied().unwrap_or(0.0)
             })
             .sum()
-    }
-}
-
-struct SpeciesDraft {
-    name: String,
-    protons: i8,
-    charge: i8,
-}
-
-struct Draft {
-    builder: SystemBuilder,
-    water: Water,
-    model: ActivityModel,
-    parts: Vec<Part>,
-    species: Vec<Vec<SpeciesDraft>>,
-    pks: Vec<PkRow>,
-}
-
-impl Draft {
-    fn put(&mut self, component: &Component, concentration: Option<Node>) {
-        let (index, drafts) = match component {
-            Component::Ligand(ligand) => self.ligand(ligand),
-            Component::Ion(ion) => {
-                let size = ion.ion_size.map(Decimal::to_f64);
-                let draft = SpeciesDraft {
-                    name: ion.symbol.clone(),
-                    protons: 0,
-                    charge: ion.charge,
-                };
-                (self.builder.inert(ion.charge, size), vec![draft])
-            }
-        };
-        self.parts.push(Part {
-            component: component.clone(),
-            index,
-            concentration,
-            held: false,
-        });
-        self.species.push(drafts);
-    }
-
-    fn ligand(&mut self, ligand: &Arc<Ligand>) -> (ComponentIndex, Vec<SpeciesDraft>) {
-        let found: Vec<FoundPk> = ligand
-            .steps
-            .iter()
-            .enumerate()
-            .map(|(step, entry)| pk_of(ligand, step, &entry.preferred, &self.water, self.model))
-            .collect();
-        let mut species = Vec::new();
-        let mut drafts = Vec::new();
-        for state in 0..=ligand.steps.len() {
-            let lg_beta: f64 = found.iter().skip(state).map(|pk| pk.value).sum();
-            let charge = ligand.state_charge(state);
-            let protons = i8::try_from(ligand.state_protons(state)).unwrap_or(i8::MAX);
-            let mut row = Species::new(charge, protons, lg_beta);
-            if let Some(size) = ligand.ion_sizes.get(state).copied().flatten() {
-                row = row.with_ion_size(size.to_f64());
-            }
-            species.push(row);
-            drafts.push(SpeciesDraft {
-                name: ligand.states.get(state).cloned().unwrap_or_default(),
-                protons,
-                charge,
-            });
-        }
-        for (step, found) in found.into_iter().enumerate() {
-            self.pks.push(PkRow {
-                ligand: Arc::clone(ligand),
-                step,
-                found,
-                effects: Vec::new(),
-            });
-        }
-        (self.builder.ligand(&species), drafts)
-    }
-
-    /// Holds CO₂(aq) at the activity that a pressure in atm gives.
-    fn hold_carbon_dioxide(&mut self, pressure: f64) -> Result<(), Unsolvable> {
-        let is_carbonic = |part: &Part| part.component.name() == CARBONIC_ACID;
-        if !self.parts.iter().any(is_carbonic) {
-            let library = Catalogue::embedded()?;
-            if let Some(ligand) = library.ligand(CARBONIC_ACID) {
-                let component = Component::Ligand(Arc::clone(ligand));
-                self.put(&component, None);
-            }
-        }
-        let lg_activity =
-            carbon_dioxide::lg_henry(self.water.temperature) + elementary::log10(pressure);
-        if let Some(part) = self.parts.iter_mut().find(|part| is_carbonic(part)) {
-            part.held = true;
-            self.builder.hold(part.index, 2, lg_activity);
-        }
-        Ok(())
     }
 }
 

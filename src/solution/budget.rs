@@ -1,12 +1,7 @@
-//! The uncertainty budget of a pH, from exact derivatives.
+//! An uncertainty budget: independent contributions, their shares, combined and expanded uncertainty.
 
 use crate::problem::InputId;
 use crate::solution::answer::{Budget, BudgetLine};
-use crate::solution::assembly::{Assembly, Solved};
-use crate::solution::assumption::Surroundings;
-use crate::solution::conclusion::Bench;
-use crate::solution::recipe::Distribution;
-use crate::solution::simulation::Added;
 
 /// One quantity that a result depends on, with its uncertainty.
 #[derive(Clone, Debug)]
@@ -79,173 +74,9 @@ impl Budget {
     }
 }
 
-/// The coverage factor of every expanded uncertainty.
-const COVERAGE_FACTOR: f64 = 2.0;
-
-/// The budget of the pH of a solved assembly.
-pub(super) fn of(
-    bench: &Bench<'_>,
-    assembly: &Assembly,
-    solved: &Solved,
-    surroundings: &Surroundings,
-) -> Budget {
-    Budget::of(
-        &contributions(bench, assembly, solved, surroundings),
-        COVERAGE_FACTOR,
-    )
-}
-
-/// Inputs, molar masses, constants, temperature and model, each with its uncertainty; quantities without one are left out.
-pub(super) fn contributions(
-    bench: &Bench<'_>,
-    assembly: &Assembly,
-    solved: &Solved,
-    surroundings: &Surroundings,
-) -> Vec<Contribution> {
-    let (gradient, sensitivities) = assembly.gradient(solved);
-    let mut lines: Vec<Contribution> = assembly
-        .recipe
-        .variables
-        .iter()
-        .zip(&gradient)
-        .filter(|(variable, _)| variable.standard > 0.0)
-        .map(|(variable, by)| Contribution {
-            what: variable.what.clone(),
-            input: variable.input.clone(),
-            value: variable.written.clone(),
-            standard: variable.standard / variable.base_per_unit,
-            unit: variable.unit.clone(),
-            sensitivity: by * variable.base_per_unit,
-            degrees_of_freedom: variable.degrees_of_freedom,
-            origin: variable.origin.to_owned(),
-        })
-        .collect();
-    for pk in &assembly.pks {
-        let standard = Assembly::pk_standard(pk);
-        if standard > 0.0 {
-            lines.push(Contribution {
-                what: format!("pK{} of {}", pk.step + 1, pk.ligand.name),
-                input: None,
-                value: format!("{:.4}", pk.found.value),
-                standard,
-                unit: String::new(),
-                sensitivity: Assembly::by_pk(pk, &sensitivities),
-                degrees_of_freedom: None,
-                origin: "the constant's source, taken as standard".to_owned(),
-            });
-        }
-    }
-    let temperature = &bench.statement.conditions.temperature.value;
-    let standard = temperature.measured.standard_uncertainty();
-    if standard > 0.0 {
-        lines.push(Contribution {
-            what: temperature.id.to_string(),
-            input: Some(temperature.id.clone()),
-            value: temperature.measured.to_string(),
-            standard,
-            unit: "K".to_owned(),
-            sensitivity: surroundings.ph_per_kelvin,
-            degrees_of_freedom: temperature.measured.degrees_of_freedom(),
-            origin: "stated".to_owned(),
-        });
-    }
-    lines.extend(model_lines(bench, solved, surroundings));
-    lines
-}
-
-/// What a simulation adds to the pH of each draw: temperature and model, which no input of the recipe carries.
-pub(super) fn added(bench: &Bench<'_>, solved: &Solved, surroundings: &Surroundings) -> Vec<Added> {
-    let temperature = &bench.statement.conditions.temperature.value.measured;
-    let mut added = vec![Added {
-        standard: temperature.standard_uncertainty() * surroundings.ph_per_kelvin,
-        distribution: Distribution::Normal,
-    }];
-    added.extend(
-        model_lines(bench, solved, surroundings)
-            .into_iter()
-            .map(|line| Added {
-                standard: line.standard,
-                distribution: if line.origin == MODEL {
-                    Distribution::Normal
-                } else {
-                    Distribution::Rectangular
-                },
-            }),
-    );
-    added.retain(|added| added.standard.abs() > 0.0);
-    added
-}
-
-/// Where the model's own error comes from, in a budget.
-const MODEL: &str = "model";
-
-/// Standard uncertainty in pH of the models against the primary pH standards at I up to 0.1 mol/kg: at 25 °C, and over 0 to 50 °C.
-///
-/// Source: our own comparison with the primary standards of Buck et al. (2002), Pure Appl. Chem. 74, 2169.
-const MODEL_AT_25: f64 = 0.008;
-const MODEL_0_TO_50: f64 = 0.010;
-
-/// Beyond 50 °C: twice that, by judgement; the standards there are few.
-const MODEL_BEYOND: f64 = 0.020;
-
-/// Ionic strength in mol/kg up to which those figures hold.
-const MODEL_RANGE: f64 = 0.1;
-
-/// The model's own error, and above 0.1 mol/kg the difference between two models, as half width of a rectangular distribution.
-fn model_lines(
-    bench: &Bench<'_>,
-    solved: &Solved,
-    surroundings: &Surroundings,
-) -> Vec<Contribution> {
-    let celsius = bench.setting.temperature - 273.15;
-    let standard = if (celsius - 25.0).abs() <= 1.0 {
-        MODEL_AT_25
-    } else if (0.0..=50.0).contains(&celsius) {
-        MODEL_0_TO_50
-    } else {
-        MODEL_BEYOND
-    };
-    let line = |what: String, value: String, standard: f64, origin: &str| Contribution {
-        what,
-        input: None,
-        value,
-        standard,
-        unit: String::new(),
-        sensitivity: 1.0,
-        degrees_of_freedom: None,
-        origin: origin.to_owned(),
-    };
-    let mut lines = vec![line(
-        "activity model and constants against the primary pH standards".to_owned(),
-        bench.chosen.choice.name().to_owned(),
-        standard,
-        MODEL,
-    )];
-    let (second, ph) = &surroundings.second_model;
-    let difference = (ph - solved.certified.ph()).abs();
-    let ideal = bench.chosen.choice == crate::problem::ActivityChoice::Ideal;
-    if (solved.certified.ionic_strength() > MODEL_RANGE || ideal) && difference > 0.0 {
-        lines.push(line(
-            format!(
-                "difference between the models {} and {second}",
-                bench.chosen.choice.name()
-            ),
-            format!("{difference:.4}"),
-            difference / 3.0_f64.sqrt(),
-            "model, half width of a rectangular distribution",
-        ));
-    }
-    lines
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::problem::ContentAmount;
-    use crate::problem::{Composition, MadeUp};
-    use crate::quantity::Unit;
-    use crate::solution::solve;
-    use crate::solution::specimen::{content, input, speciation, uncertain};
 
     fn line(value: f64, standard: f64, sensitivity: f64, dof: Option<f64>) -> Contribution {
         Contribution {
@@ -333,47 +164,5 @@ mod tests {
             ],
         );
         assert!((a3.standard - 0.000_184_3).abs() <= 5e-7, "{}", a3.standard);
-    }
-
-    fn weighed(mass: &str, volume: &str) -> Composition {
-        Composition {
-            made_up: MadeUp::To(uncertain("volume", volume, "0.001", Unit::Litre)),
-            ingredients: vec![
-                content(
-                    "sodium dihydrogen phosphate dihydrate",
-                    ContentAmount::Mass(uncertain("mass", mass, "0.01", Unit::Gram)),
-                ),
-                content(
-                    "disodium hydrogen phosphate",
-                    ContentAmount::Concentration(input("base", "0.030", Unit::MolePerLitre)),
-                ),
-            ],
-        }
-    }
-
-    #[test]
-    fn sensitivities_are_the_derivatives() {
-        let answer = solve(&speciation(weighed("3.9003", "1.000"), "25")).unwrap();
-        let of = |what: &str| {
-            let budget = answer.budget.as_ref().unwrap();
-            let line = budget.lines.iter().find(|line| line.what == what);
-            line.unwrap().sensitivity
-        };
-        let ph = |mass: &str, volume: &str| {
-            let answer = solve(&speciation(weighed(mass, volume), "25"));
-            answer.unwrap().state.ph
-        };
-        // Richardson's extrapolation of central differences with steps h and 2 h; error of the order of h⁴.
-        let richardson = |one: f64, two: f64| (4.0 * one - two) / 3.0;
-        let by_mass = richardson(
-            (ph("3.9103", "1.000") - ph("3.8903", "1.000")) / 0.02,
-            (ph("3.9203", "1.000") - ph("3.8803", "1.000")) / 0.04,
-        );
-        assert!((by_mass / of("mass") - 1.0).abs() < 1e-6, "{by_mass}");
-        let by_volume = richardson(
-            (ph("3.9003", "1.001") - ph("3.9003", "0.999")) / 0.002,
-            (ph("3.9003", "1.002") - ph("3.9003", "0.998")) / 0.004,
-        );
-        assert!((by_volume / of("volume") - 1.0).abs() < 1e-6, "{by_volume}");
     }
 }

@@ -6,8 +6,8 @@ use crate::quantity::{Decimal, Dimension, RoundingRule};
 use crate::solution::answer::{Budget, Comparison, Explanation};
 use crate::solution::assembly::{Assembly, Solved};
 use crate::solution::assumption::Surroundings;
-use crate::solution::budget;
 use crate::solution::conclusion::Bench;
+use crate::solution::ph_budget;
 use crate::solution::tape::VariableIndex;
 
 /// Coverage factor of the uncertainty of a difference.
@@ -26,7 +26,7 @@ pub(super) fn of(
     let reading = bench.statement.measured.as_ref()?;
     let found = reading.ph.value().base();
     let difference = found - solved.certified.ph();
-    let lines = budget::contributions(bench, assembly, solved, surroundings);
+    let lines = ph_budget::contributions(bench, assembly, solved, surroundings);
     let computed = Budget::of(&lines, COVERAGE_FACTOR).standard;
     let read = reading.ph.measured.standard_uncertainty();
     let variance: f64 = [computed, read].iter().map(|u| u * u).sum();

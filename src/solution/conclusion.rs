@@ -2,13 +2,13 @@
 
 use crate::problem::{Composition, Ingredient, InputId, Statement, UncertaintyMode};
 use crate::solution::Unsolvable;
-use crate::solution::answer::{Answer, ConstantsUsed, ModelFacts, Outcome};
+use crate::solution::answer::{Answer, Assumption, ConstantsUsed, ModelFacts, Outcome};
 use crate::solution::assembly::{Assembly, CARBONIC_ACID, Setting};
 use crate::solution::model_choice::{ChosenModel, choose, within_range};
 use crate::solution::recipe::{Recipe, Writer};
 use crate::solution::speciation::state;
 use crate::solution::{
-    assumption, budget, carbon_dioxide, caution, comparison, distribution, polyborate, shortcut,
+    assumption, carbon_dioxide, caution, comparison, distribution, ph_budget, polyborate, shortcut,
     simulation,
 };
 use crate::substance::Component;
@@ -28,6 +28,8 @@ pub(super) struct Finding {
     pub(super) assembly: Assembly,
     pub(super) outcome: Outcome,
     pub(super) liquid: Composition,
+    /// Assumptions of the task itself.
+    pub(super) assumptions: Vec<Assumption>,
 }
 
 impl<'a> Bench<'a> {
@@ -67,6 +69,7 @@ impl<'a> Bench<'a> {
             assembly,
             outcome,
             liquid,
+            assumptions,
         } = finding;
         let solved = assembly.solve(&assembly.stated())?;
         let state = state(&assembly, &solved);
@@ -79,12 +82,12 @@ impl<'a> Bench<'a> {
         let budget = match self.statement.conditions.uncertainty.value {
             UncertaintyMode::None => None,
             UncertaintyMode::Budget | UncertaintyMode::Simulation { .. } => {
-                Some(budget::of(self, &assembly, &solved, &surroundings))
+                Some(ph_budget::of(self, &assembly, &solved, &surroundings))
             }
         };
         let simulation = match self.statement.conditions.uncertainty.value {
             UncertaintyMode::Simulation { draws, seed } => {
-                let added = budget::added(self, &solved, &surroundings);
+                let added = ph_budget::added(self, &solved, &surroundings);
                 Some(simulation::simulate(
                     &assembly, &solved, &added, draws, seed,
                 )?)
@@ -92,6 +95,8 @@ impl<'a> Bench<'a> {
             UncertaintyMode::None | UncertaintyMode::Budget => None,
         };
         let (shortcuts, hand_value) = shortcut::tested(self, &assembly, &solved);
+        let mut all = assumption::list(self, &assembly, &surroundings, &liquid)?;
+        all.extend(assumptions);
         Ok(Answer {
             model: self.model_facts(&assembly),
             simulation,
@@ -104,7 +109,7 @@ impl<'a> Bench<'a> {
                 water: self.statement.conditions.pkw.clone(),
                 ..constants(&assembly)
             },
-            assumptions: assumption::list(self, &assembly, &surroundings, &liquid)?,
+            assumptions: all,
             cautions: caution::list(self, &assembly, &state, &surroundings, &liquid),
             liquid,
             outcome,

@@ -19,6 +19,7 @@ pub(super) fn solution(bench: &Bench<'_>, composition: &Composition) -> Result<A
         assembly,
         outcome: Outcome::Speciation,
         liquid: composition.clone(),
+        assumptions: Vec::new(),
     })
 }
 
@@ -38,6 +39,7 @@ pub(super) fn mixture(bench: &Bench<'_>, task: &Mixing) -> Result<Answer, Unsolv
         assembly,
         outcome: Outcome::Mixing(MixingOutcome { volume, series }),
         liquid: task.mixture.clone(),
+        assumptions: Vec::new(),
     })
 }
 

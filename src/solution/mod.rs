@@ -5,11 +5,14 @@
 //! seed.
 
 mod adjustment;
+mod adjustment_start;
 pub mod answer;
+mod approach;
 mod assembly;
 mod assumption;
 mod budget;
 mod buffer_suggestion;
+mod burette;
 mod carbon_dioxide;
 mod caution;
 mod comparison;
@@ -17,12 +20,23 @@ mod composition;
 mod conclusion;
 mod dissociation;
 mod distribution;
+mod draft;
+mod end_point;
+mod equivalence;
+mod fit;
+mod fit_parameter;
 mod hand;
+mod hand_verdict;
+mod indicator;
 mod mixing;
 mod model_choice;
+mod outcome;
+mod ph_budget;
 mod polyborate;
 mod preparation;
+mod readings;
 mod recipe;
+mod residual;
 mod search;
 mod shortcut;
 mod simulation;
@@ -31,6 +45,7 @@ mod speciation;
 #[cfg(test)]
 mod specimen;
 mod tape;
+mod titration;
 mod unsolvable;
 
 pub use budget::Contribution;
@@ -51,8 +66,6 @@ pub fn solve(statement: &Statement) -> Result<Answer, Unsolvable> {
         Problem::Mixing(task) => mixing::mixture(&bench, task),
         Problem::Preparation(task) => preparation::prepared(&bench, task),
         Problem::Adjustment(task) => adjustment::adjusted(&bench, task),
-        Problem::Titration(_) => Err(Unsolvable::Fit {
-            reason: String::new(),
-        }),
+        Problem::Titration(task) => titration::titrated(&bench, task),
     }
 }

@@ -1,20 +1,19 @@
 //! A buffer to be made: how much of each source, the pH after rounding to what the instruments can do, and the pH at the temperature of use.
 
 use crate::equilibrium::Total;
-use crate::problem::{
-    BufferChoice, Composition, Corrections, MadeUp, Preparation, Source, SourceKind, Taken, Trace,
-};
+use crate::problem::{BufferChoice, Corrections, Preparation, Source, SourceKind, Taken, Trace};
 use crate::quantity::{Decimal, Dimension};
 use crate::solution::Unsolvable;
 use crate::solution::answer::{Addition, Answer, Outcome, PreparationOutcome, Suggestion};
+use crate::solution::approach::{
+    Item, MOST_DISSOLVED, Way, composed, items, readings, volumes_fit,
+};
 use crate::solution::assembly::Assembly;
 use crate::solution::assumption::ph_per_kelvin;
 use crate::solution::buffer_suggestion;
 use crate::solution::conclusion::{Bench, Finding};
 use crate::solution::search::{bracket, root};
-use crate::solution::source::{Measure, ingredient, name, taken_id, to_steps};
-use crate::solution::tape::VariableIndex;
-use crate::substance::Component;
+use crate::solution::source::{name, to_steps};
 use std::sync::Arc;
 
 /// The answer to a preparation.
@@ -31,16 +30,6 @@ pub(super) fn prepared(bench: &Bench<'_>, task: &Preparation) -> Result<Answer, 
     making.conclude(&exact, suggestions)
 }
 
-/// One thing to be measured out.
-struct Item {
-    source: Source,
-    measure: Measure,
-    step: Decimal,
-    variable: VariableIndex,
-    /// Amount of the buffering family in mol that one base unit (g, L) brings.
-    family: f64,
-}
-
 /// A preparation at work: its tableau at the temperature of use, with the amounts taken as variables.
 struct Making<'a> {
     bench: &'a Bench<'a>,
@@ -54,9 +43,6 @@ struct Making<'a> {
     /// Density of water in kg/L at the temperature of preparation.
     density: f64,
 }
-
-/// Mass in g per litre beyond which nothing is dissolved any more.
-const MOST_DISSOLVED: f64 = 600.0;
 
 impl<'a> Making<'a> {
     fn of(
@@ -197,7 +183,7 @@ impl<'a> Making<'a> {
             .map(|(item, amount)| to_steps(amount / item.measure.base_per_unit(), item.step, rule))
             .collect();
         let rounded: Vec<f64> = self.in_base(&figures);
-        self.volumes_fit(&rounded)?;
+        volumes_fit(&self.items, &rounded, &self.task.target.volume)?;
         let sources: Vec<Source> = self.items.iter().map(|item| item.source.clone()).collect();
         let steps: Vec<Decimal> = self.items.iter().map(|item| item.step).collect();
         let as_rounded = composed(self.task, &sources, &figures, Some(&steps))?;
@@ -228,6 +214,7 @@ impl<'a> Making<'a> {
             assembly,
             outcome: Outcome::Preparation(Box::new(outcome)),
             liquid,
+            assumptions: readings(&self.items, &self.task.readability),
         })
     }
 
@@ -237,26 +224,6 @@ impl<'a> Making<'a> {
             .zip(figures)
             .map(|(item, figure)| figure.to_f64() * item.measure.base_per_unit())
             .collect()
-    }
-
-    fn volumes_fit(&self, taken: &[f64]) -> Result<(), Unsolvable> {
-        let pipetted: f64 = self
-            .items
-            .iter()
-            .zip(taken)
-            .filter(|(item, _)| item.measure == Measure::Pipetted)
-            .map(|(_, litres)| litres)
-            .sum();
-        if pipetted > self.volume {
-            return Err(Unsolvable::Sources {
-                reason: format!(
-                    "the stocks alone take {pipetted:.3} L, more than the final volume of {}; use stronger stocks or a lower concentration",
-                    self.task.target.volume.measured
-                ),
-                input: self.task.target.volume.id.clone(),
-            });
-        }
-        Ok(())
     }
 
     fn additions(
@@ -305,241 +272,22 @@ impl<'a> Making<'a> {
     }
 }
 
-/// How the target pH is approached.
-enum Way {
-    /// One source: nothing to choose.
-    Alone { amount: f64 },
-    /// Two forms of the family, the share of the first between 0 and 1.
-    TwoForms { amounts: [f64; 2] },
-    /// One source of the family at its full amount, and a titrant up to `most`.
-    Titrant {
-        amount: f64,
-        titrant_first: bool,
-        most: f64,
-    },
-}
-
-impl Way {
-    fn of(items: &[Item], salted: bool, amount: f64, volume: f64) -> Self {
-        let sources = items.len() - usize::from(salted && !items.is_empty());
-        let family = |place: usize| items.get(place).map_or(0.0, |item| item.family);
-        let most = |place: usize| match items.get(place).map(|item| item.measure) {
-            Some(Measure::Pipetted) => volume,
-            Some(Measure::Weighed) | None => MOST_DISSOLVED * volume,
-        };
-        match (sources, family(0) > 0.0, family(1) > 0.0) {
-            (1, ..) => Self::Alone {
-                amount: amount / family(0),
-            },
-            (_, true, true) => Self::TwoForms {
-                amounts: [amount / family(0), amount / family(1)],
-            },
-            (_, true, false) => Self::Titrant {
-                amount: amount / family(0),
-                titrant_first: false,
-                most: most(1),
-            },
-            (_, false, _) => Self::Titrant {
-                amount: amount / family(1),
-                titrant_first: true,
-                most: most(0),
-            },
-        }
-    }
-
-    fn taken(&self, x: f64, salt: f64, salted: bool) -> Vec<f64> {
-        let mut taken = match self {
-            Self::Alone { amount } => vec![*amount],
-            Self::TwoForms {
-                amounts: [first, second],
-            } => vec![x * first, (1.0 - x) * second],
-            Self::Titrant {
-                amount,
-                titrant_first: true,
-                ..
-            } => vec![x, *amount],
-            Self::Titrant { amount, .. } => vec![*amount, x],
-        };
-        if salted {
-            taken.push(salt);
-        }
-        taken
-    }
-}
-
-/// The composition with figures in g or mL for each source; where steps are given, each figure is uncertain by its step.
-fn composed(
-    task: &Preparation,
-    sources: &[Source],
-    figures: &[Decimal],
-    steps: Option<&[Decimal]>,
-) -> Result<Composition, Unsolvable> {
-    let none = Decimal::whole(0);
-    let ingredients = sources
-        .iter()
-        .zip(figures)
-        .enumerate()
-        .map(|(place, (source, figure))| {
-            let step = steps.and_then(|steps| steps.get(place)).copied();
-            ingredient(source, *figure, step.unwrap_or(none))
-        })
-        .collect::<Result<_, _>>()?;
-    let volume = &task.target.volume;
-    let flask = task
-        .readability
-        .flask
-        .as_ref()
-        .filter(|flask| (flask.value().base() / volume.value().base() - 1.0).abs() < 1e-9);
-    Ok(Composition {
-        made_up: MadeUp::To(flask.unwrap_or(volume).clone()),
-        ingredients,
-    })
-}
-
-fn items(
-    task: &Preparation,
-    assembly: &Assembly,
-    sources: Vec<Source>,
-) -> Result<Vec<Item>, Unsolvable> {
-    let lost = |source: &Source| Unsolvable::Sources {
-        reason: "the source does not enter the composition".to_owned(),
-        input: source.id.clone(),
-    };
-    let variables: Vec<VariableIndex> = sources
-        .iter()
-        .map(|source| {
-            let variable = assembly.variable(&taken_id(source));
-            variable.ok_or_else(|| lost(source))
-        })
-        .collect::<Result<_, _>>()?;
-    let brought: Vec<Vec<(String, f64)>> = variables
-        .iter()
-        .map(|variable| ligands_of(assembly, &variables, *variable))
-        .collect();
-    let families = families(&brought);
-    let volume = task.target.volume.value().base();
-    let mut items = Vec::new();
-    for ((source, variable), brought) in sources.into_iter().zip(variables).zip(&brought) {
-        let measure = Measure::of(&source);
-        let stated = match measure {
-            Measure::Weighed => task
-                .readability
-                .balance
-                .as_ref()
-                .and_then(|b| b.measured.exact()),
-            Measure::Pipetted => task
-                .readability
-                .pipette
-                .as_ref()
-                .and_then(|pipette| Some(pipette.measured.exact()?.scaled(3))),
-        };
-        let family: f64 = brought
-            .iter()
-            .filter(|(name, _)| families.contains(name))
-            .map(|(_, concentration)| concentration * volume)
-            .sum();
-        items.push(Item {
-            step: stated.unwrap_or(measure.default_step()),
-            source,
-            measure,
-            variable,
-            family,
-        });
-    }
-    if items.iter().all(|item| item.family <= 0.0) {
-        return Err(Unsolvable::Sources {
-            reason: "none of the sources is a buffer".to_owned(),
-            input: task.target.ph.id.clone(),
-        });
-    }
-    Ok(items)
-}
-
-/// Concentration of each ligand, in mol/L, that one base unit of one source brings.
-fn ligands_of(
-    assembly: &Assembly,
-    all: &[VariableIndex],
-    one: VariableIndex,
-) -> Vec<(String, f64)> {
-    let mut values = assembly.stated();
-    for variable in all {
-        if let Some(place) = values.get_mut(variable.place()) {
-            *place = Total::from_f64(if *variable == one { 1.0 } else { 0.0 });
-        }
-    }
-    let worked = assembly.recipe.tape.evaluate(&values);
-    assembly
-        .parts
-        .iter()
-        .filter(|part| matches!(part.component, Component::Ligand(_)))
-        .filter_map(|part| {
-            let concentration = worked.at(part.concentration?).to_f64();
-            (concentration > 0.0).then(|| (part.component.name().to_owned(), concentration))
-        })
-        .collect()
-}
-
-/// The acid families that buffer: those that the first two sources share; else all but those of strong acids.
-fn families(brought: &[Vec<(String, f64)>]) -> Vec<String> {
-    const STRONG: [&str; 1] = ["sulfuric acid"];
-    let names = |place: usize| -> Vec<String> {
-        let brought = brought.get(place).map(Vec::as_slice).unwrap_or_default();
-        brought.iter().map(|(name, _)| name.clone()).collect()
-    };
-    let (first, second) = (names(0), names(1));
-    let shared: Vec<String> = first
-        .iter()
-        .filter(|name| second.contains(name))
-        .cloned()
-        .collect();
-    if !shared.is_empty() {
-        return shared;
-    }
-    first
-        .into_iter()
-        .chain(second)
-        .filter(|name| !STRONG.contains(&name.as_str()))
-        .collect()
-}
-
 #[cfg(test)]
 mod tests {
-    use crate::problem::InputId;
     use crate::problem::{
-        BufferChoice, Corrections, IonicStrengthTarget, Preparation, PreparationTarget, Problem,
-        Readability, Source, SourceKind, Strength, Trace,
+        BufferChoice, IonicStrengthTarget, Preparation, PreparationTarget, Problem, Readability,
+        Source,
     };
     use crate::quantity::Unit;
     use crate::solution::answer::{Outcome, PreparationOutcome};
-    use crate::solution::specimen::{form, input, statement};
+    use crate::solution::specimen::{form, input, solid, statement, stock};
     use crate::solution::{Unsolvable, solve};
 
-    fn solid(name: &str) -> Source {
-        Source {
-            id: InputId::new("from").within(name),
-            kind: SourceKind::Solid {
-                form: form(name),
-                corrections: Corrections::default(),
-            },
-            trace: Trace::default(),
-        }
-    }
-
-    fn stock(name: &str, concentration: &str) -> Source {
-        let id = InputId::new("from").within(name);
-        Source {
-            kind: SourceKind::Stock {
-                form: form(name),
-                strength: Strength::Concentration(input(
-                    &format!("from / {name} / concentration"),
-                    concentration,
-                    Unit::MolePerLitre,
-                )),
-                corrections: Corrections::default(),
-            },
-            id,
-            trace: Trace::default(),
-        }
+    fn phosphates() -> Vec<Source> {
+        vec![
+            solid("sodium dihydrogen phosphate monohydrate"),
+            solid("disodium hydrogen phosphate"),
+        ]
     }
 
     fn task(ph: &str, sources: Vec<Source>) -> Preparation {
@@ -568,11 +316,7 @@ mod tests {
 
     #[test]
     fn two_forms_give_the_target_and_the_total() {
-        let forms = vec![
-            solid("sodium dihydrogen phosphate monohydrate"),
-            solid("disodium hydrogen phosphate"),
-        ];
-        let (found, _) = outcome(task("7.20", forms)).unwrap();
+        let (found, _) = outcome(task("7.20", phosphates())).unwrap();
         // 0.1 mg of about 7 g moves the pH by far less than 0.0005.
         assert!(
             (found.ph_at_use - 7.20).abs() < 0.0005,
@@ -617,13 +361,9 @@ mod tests {
 
     #[test]
     fn out_of_reach_says_what_is_within() {
-        let forms = vec![
-            solid("sodium dihydrogen phosphate monohydrate"),
-            solid("disodium hydrogen phosphate"),
-        ];
         let Err(Unsolvable::Unreachable {
             lowest, highest, ..
-        }) = outcome(task("3.0", forms))
+        }) = outcome(task("3.0", phosphates()))
         else {
             panic!("pH 3 is out of reach of these forms");
         };

@@ -3,11 +3,12 @@
 use crate::equilibrium::elementary::exp10;
 use crate::equilibrium::{ActivityModel, Solver, System, Total};
 use crate::problem::{HandValue, ShortcutName};
-use crate::quantity::{Dimension, RoundingRule};
+use crate::quantity::Dimension;
 use crate::solution::answer::{HandVerdict, ShortcutResult};
 use crate::solution::assembly::{Assembly, Solved};
 use crate::solution::conclusion::Bench;
 use crate::solution::hand::{HandCase, Nature};
+use crate::solution::hand_verdict::verdict;
 
 /// The limit in pH where none is stated.
 const LIMIT: f64 = 0.02;
@@ -47,16 +48,18 @@ fn limit(hand: &HandValue) -> f64 {
         .map_or(LIMIT, |limit| limit.value().base())
 }
 
-struct Trial<'a> {
+/// A solution on which shortcuts are tried.
+pub(super) struct Trial<'a> {
     assembly: &'a Assembly,
     solved: &'a Solved,
     case: Option<HandCase>,
-    decimals: u32,
-    limit: f64,
+    pub(super) decimals: u32,
+    pub(super) limit: f64,
 }
 
 impl Trial<'_> {
-    fn ph(&self) -> f64 {
+    /// pH of the full result, dimensionless.
+    pub(super) fn ph(&self) -> f64 {
         self.solved.certified.ph()
     }
 
@@ -77,7 +80,8 @@ impl Trial<'_> {
         }
     }
 
-    fn of(&self, name: ShortcutName) -> Option<ShortcutResult> {
+    /// What a shortcut gives, where it applies.
+    pub(super) fn of(&self, name: ShortcutName) -> Option<ShortcutResult> {
         let (ph, condition) = match name {
             ShortcutName::FirstStepOnly => self.first_step()?,
             ShortcutName::XNeglected => self.x_neglected()?,
@@ -284,62 +288,6 @@ fn nearest(pks: &[f64], step: usize) -> Option<f64> {
 
 fn holds(condition: bool) -> &'static str {
     if condition { "holds" } else { "fails" }
-}
-
-/// Whether a recorded hand value stands: its distance from the full result against the limit.
-fn verdict(trial: &Trial<'_>, hand: &HandValue) -> HandVerdict {
-    let recorded = hand.ph.value().base();
-    let shift = recorded - trial.ph();
-    let stands = shift.abs() <= trial.limit + 1e-12;
-    let gives = trial.of(hand.by);
-    let shown = |value: f64| RoundingRule::HalfEven.to_places(value, 3);
-    let against = format!(
-        "it is {} from the full result {}, limit {}",
-        signed(shift),
-        shown(trial.ph()),
-        trial.limit
-    );
-    let of_shortcut = match &gives {
-        None => format!(
-            "the shortcut \"{}\" does not apply to this solution",
-            hand.by.name()
-        ),
-        Some(result) => {
-            let unit = exp10(-f64::from(trial.decimals));
-            if (result.ph - recorded).abs() <= 1.0001 * unit {
-                format!(
-                    "the shortcut gives {}; condition: {}",
-                    shown(result.ph),
-                    result.condition
-                )
-            } else {
-                format!(
-                    "the shortcut, worked again, gives {}, not {}; condition: {}",
-                    shown(result.ph),
-                    hand.ph.measured,
-                    result.condition
-                )
-            }
-        }
-    };
-    HandVerdict {
-        recorded: hand.ph.measured.to_string(),
-        by: hand.by,
-        shortcut_gives: gives.map(|result| result.ph),
-        shift,
-        limit: trial.limit,
-        stands,
-        reason: format!("{against}; {of_shortcut}"),
-    }
-}
-
-fn signed(value: f64) -> String {
-    let figure = RoundingRule::HalfEven.to_places(value, 3);
-    if value > 0.0 {
-        format!("+{figure}")
-    } else {
-        figure
-    }
 }
 
 #[cfg(test)]

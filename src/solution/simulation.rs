@@ -127,7 +127,7 @@ pub(super) fn simulate(
             .sum();
         values.push(ph + shift);
     }
-    summary(values, draws, seed).ok_or_else(|| Unsolvable::Simulation { draws })
+    summary(values, draws, seed).ok_or(Unsolvable::Simulation { draws })
 }
 
 /// The room of one draw.

@@ -125,6 +125,7 @@ mod tests {
     use crate::quantity::Unit;
     use crate::solution::solve;
     use crate::solution::specimen::{input, molal, molar, speciation, stated};
+    use crate::substance::Catalogue;
 
     /// Buck et al. (2002), Pure Appl. Chem. 74, 2169, and Bates (1973), primary standards at 25 °C; recalled. Tolerance 0.012: 0.005 for the
     /// standards' own uncertainty and the rest for the activity convention.
@@ -210,5 +211,30 @@ mod tests {
         let contents = [("sodium ion", "0.1"), ("chloride ion", "0.09")];
         let error = solve(&speciation(molar(&contents), "25")).unwrap_err();
         assert!(error.input().is_some(), "{error}");
+    }
+
+    #[test]
+    fn every_form_of_the_library_has_a_certified_answer() {
+        let mut failed = Vec::new();
+        for form in Catalogue::embedded().unwrap().forms() {
+            if form.charge != 0 {
+                continue;
+            }
+            for celsius in ["5", "25", "60"] {
+                let contents = [(form.name.as_str(), "0.020")];
+                if let Err(error) = solve(&speciation(molar(&contents), celsius)) {
+                    failed.push(format!("{} at {celsius} °C: {error}", form.name));
+                }
+            }
+        }
+        assert!(failed.is_empty(), "{failed:#?}");
+    }
+
+    #[test]
+    fn nothing_of_something_changes_nothing() {
+        let with = [("acetic acid", "0.1"), ("phosphoric acid", "0")];
+        let with = solve(&speciation(molar(&with), "25")).unwrap();
+        let without = solve(&speciation(molar(&[("acetic acid", "0.1")]), "25")).unwrap();
+        assert_eq!(with.state.ph.to_bits(), without.state.ph.to_bits());
     }
 }

@@ -2,8 +2,8 @@
 
 use crate::problem::{
     ActivityChoice, Air, Annotations, Composition, Conditions, Content, ContentAmount, Corrections,
-    Ingredient, Input, InputId, Label, MadeUp, Origin, Problem, Reporting, Speciation, Stated,
-    Statement, Trace, UncertaintyMode,
+    Ingredient, Input, InputId, Label, MadeUp, Origin, Problem, Reporting, Source, SourceKind,
+    Speciation, Stated, Statement, Strength, Trace, UncertaintyMode,
 };
 use crate::quantity::{Decimal, Dimension, Measured, RoundingRule, Spread, Uncertainty, Unit};
 use crate::substance::{Catalogue, Form};
@@ -86,6 +86,7 @@ pub(super) fn statement(problem: Problem, celsius: &str) -> Statement {
             air: stated(Air::Closed),
             uncertainty: stated(UncertaintyMode::Budget),
             accepted: BTreeSet::new(),
+            carbonate: None,
             pkw: None,
         },
         problem,
@@ -126,5 +127,35 @@ pub(super) fn buffer_with_uncertainty() -> Composition {
                 ContentAmount::Mass(uncertain("base mass", "3.549", "0.05", Unit::Gram)),
             ),
         ],
+    }
+}
+
+/// A solid to be weighed.
+pub(super) fn solid(name: &str) -> Source {
+    Source {
+        id: InputId::new("from").within(name),
+        kind: SourceKind::Solid {
+            form: form(name),
+            corrections: Corrections::default(),
+        },
+        trace: Trace::default(),
+    }
+}
+
+/// A stock to be pipetted, in mol/L.
+pub(super) fn stock(name: &str, concentration: &str) -> Source {
+    let id = InputId::new("from").within(name);
+    Source {
+        kind: SourceKind::Stock {
+            form: form(name),
+            strength: Strength::Concentration(input(
+                &format!("from / {name} / concentration"),
+                concentration,
+                Unit::MolePerLitre,
+            )),
+            corrections: Corrections::default(),
+        },
+        id,
+        trace: Trace::default(),
     }
 }
