@@ -159,7 +159,7 @@ mod tests {
         let Problem::Adjustment(task) = problem("adjustment", &keys) else {
             panic!()
         };
-        assert_eq!(task.measured_ph.unwrap().value().base(), 8.31);
+        assert!((task.measured_ph.unwrap().value().base() - 8.31).abs() < 1e-12);
         assert!(matches!(task.goal, AdjustmentGoal::Reach(_)));
     }
 

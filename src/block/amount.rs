@@ -224,7 +224,10 @@ mod tests {
     };
     use crate::yaml::{Limits, read as tree};
 
-    fn with<D: Dimension>(value: &str) -> Result<Measured<D>, Vec<(Rule, String, Option<String>)>> {
+    /// The rule, the place and what is said to help.
+    type Fault = (Rule, String, Option<String>);
+
+    fn with<D: Dimension>(value: &str) -> Result<Measured<D>, Vec<Fault>> {
         let text = format!("a: {value}");
         let mut found = Vec::new();
         let root = tree(&text, Limits::BLOCK, &mut found).unwrap();
@@ -257,16 +260,11 @@ mod tests {
         ] {
             assert_eq!(with::<Volume>(text), Ok(plain), "{text}");
         }
-        assert_eq!(
-            with::<AmountConcentration>("5 µM").unwrap().value().base(),
-            5e-6
-        );
+        let micro = with::<AmountConcentration>("5 µM").unwrap();
+        assert!((micro.value().base() - 5e-6).abs() < 1e-20);
         for text in ["298.15 K", "25 °C", "25 ℃", "25°C", "25 degC"] {
-            assert_eq!(
-                with::<Temperature>(text).unwrap().value().base(),
-                298.15,
-                "{text}"
-            );
+            let kelvin = with::<Temperature>(text).unwrap().value().base();
+            assert!((kelvin - 298.15).abs() < 1e-12, "{text}");
         }
     }
 
@@ -284,96 +282,39 @@ mod tests {
         assert!(unclear[0].2.as_deref().unwrap().contains("37 ± 1 %"));
     }
 
+    /// Checks the first fault: its rule, its place and a part of what is said to help.
+    fn refused<D: Dimension>(value: &str, rule: Rule, place: &str, help: &str) {
+        let Err(found) = with::<D>(value) else {
+            panic!("{value} was read");
+        };
+        assert_eq!((found[0].0, found[0].1.as_str()), (rule, place), "{value}");
+        assert!(found[0].2.as_deref().unwrap().contains(help), "{found:?}");
+    }
+
     #[test]
     fn faults_stand_where_they_were_typed_and_say_what_to_write() {
-        for (found, rule, place, help) in [
-            (
-                with::<Volume>("0,5 L").err(),
-                Rule::DecimalComma,
-                "0,5",
-                "write `0.5`",
-            ),
-            (
-                with::<Volume>("5").err(),
-                Rule::MissingUnit,
-                "5",
-                "a volume in mL, L, µL",
-            ),
-            (
-                with::<Volume>("5 g").err(),
-                Rule::WrongUnit,
-                "g",
-                "a volume in mL, L, µL",
-            ),
-            (
-                with::<Volume>("5 mll").err(),
-                Rule::UnknownUnit,
-                "mll",
-                "did you mean `mL`?",
-            ),
-            (
-                with::<Volume>("x mL").err(),
-                Rule::BadNumber,
-                "x mL",
-                "a number, then a unit",
-            ),
-            (
-                with::<Volume>("5 ± 0.1 mL").err(),
-                Rule::BadUncertainty,
-                "± 0.1 mL",
-                "(k=2)",
-            ),
-            (
-                with::<Volume>("5 ± 0,1 mL (k=2)").err(),
-                Rule::DecimalComma,
-                "0,1",
-                "write `0.1`",
-            ),
-            (
-                with::<Volume>("5 mL (k=2)").err(),
-                Rule::BadUncertainty,
-                "(k=2)",
-                "value ± uncertainty",
-            ),
-            (
-                with::<Volume>("5 mL ± 1 L (k=2)").err(),
-                Rule::BadUncertainty,
-                "L",
-                "one unit",
-            ),
-            (
-                with::<Volume>("5 ± 1 mL (sd)").err(),
-                Rule::BadUncertainty,
-                "sd",
-                "(standard)",
-            ),
-            (
-                with::<Temperature>("25 °C ± 1 % (k=2)").err(),
-                Rule::BadUncertainty,
-                "± 1 %",
-                "°C",
-            ),
-            (
-                with::<Number>("7 ppm").err(),
-                Rule::UnexpectedUnit,
-                "ppm",
-                "a number without unit",
-            ),
-            (
-                with::<Pressure>("1 psi").err(),
-                Rule::UnknownUnit,
-                "psi",
-                "a pressure in",
-            ),
-        ] {
-            let found = found.unwrap();
-            assert_eq!(
-                (found[0].0, found[0].1.as_str()),
-                (rule, place),
-                "{found:?}"
-            );
-            assert!(found[0].2.as_deref().unwrap().contains(help), "{found:?}");
-        }
+        let volumes = "a volume in mL, L, µL";
+        refused::<Volume>("0,5 L", Rule::DecimalComma, "0,5", "write `0.5`");
+        refused::<Volume>("5", Rule::MissingUnit, "5", volumes);
+        refused::<Volume>("5 g", Rule::WrongUnit, "g", volumes);
+        refused::<Volume>("5 mll", Rule::UnknownUnit, "mll", "did you mean `mL`?");
+        refused::<Volume>("x mL", Rule::BadNumber, "x mL", "a number, then a unit");
+        refused::<Number>("7 ppm", Rule::UnexpectedUnit, "ppm", "without unit");
+        refused::<Pressure>("1 psi", Rule::UnknownUnit, "psi", "a pressure in");
+    }
+
+    #[test]
+    fn faults_of_an_uncertainty() {
+        let rule = Rule::BadUncertainty;
+        refused::<Volume>("5 ± 0.1 mL", rule, "± 0.1 mL", "(k=2)");
+        refused::<Volume>("5 ± 0,1 mL (k=2)", Rule::DecimalComma, "0,1", "write `0.1`");
+        refused::<Volume>("5 mL (k=2)", rule, "(k=2)", "value ± uncertainty");
+        refused::<Volume>("5 mL ± 1 L (k=2)", rule, "L", "one unit");
+        refused::<Volume>("5 ± 1 mL (sd)", rule, "sd", "(standard)");
+        refused::<Volume>("5 ± 1 mL (k=0)", rule, "k=0", "(standard)");
+        refused::<Volume>("5 ± 1 mL (dof=3)", rule, "dof=3", "(standard)");
+        refused::<Volume>("5 ± 1 mL (k=2, standard)", rule, "k=2, standard", "(k=2)");
+        refused::<Temperature>("25 °C ± 1 % (k=2)", rule, "± 1 %", "°C");
     }
 
     #[test]

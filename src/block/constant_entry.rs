@@ -27,9 +27,11 @@ pub(super) fn read(items: &[Node], diagnostics: &mut Vec<Diagnostic>) -> Entries
             continue;
         };
         let mut keys = mapping.keys();
+        let named_by = |kind: &&str| mapping.entries().iter().any(|e| e.key.text() == *kind);
         let found = ["substance", "ion", "form"]
             .into_iter()
-            .find_map(|kind| keys.take(kind).map(|node| (kind, node)));
+            .find(named_by)
+            .and_then(|kind| Some((kind, keys.take(kind)?)));
         let Some((kind, node)) = found else {
             diagnostics.push(
                 Diagnostic::error(

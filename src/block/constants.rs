@@ -175,73 +175,75 @@ mod tests {
         }
     }
 
+    /// A list, the rule that it breaks and the place.
+    const FAULTS: [(&str, Rule, &str); 14] = [
+        (
+            "- {substance: a, charge: 0, pKa: [4.2]}",
+            Rule::MissingSource,
+            "substance",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: ['4,2'], source: x}",
+            Rule::DecimalComma,
+            "'4,2'",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: [7.2, 2.1], source: x}",
+            Rule::BadConstants,
+            "2.1",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: 42, source: x}",
+            Rule::OutOfRange,
+            "42",
+        ),
+        (
+            "- {substance: a, charge: 77, pKa: 4, source: x}",
+            Rule::BadConstants,
+            "77",
+        ),
+        (
+            "- {substance: a, charge: 0, pka: 4, source: x}",
+            Rule::MissingKey,
+            "substance",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: [{value: 4, kind: thermo}], source: x}",
+            Rule::UnknownChoice,
+            "thermo",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: [{value: 4, kind: conditional}], source: x}",
+            Rule::MissingKey,
+            "value",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: [{value: 4, uncertainty: -1}], source: x}",
+            Rule::OutOfRange,
+            "-1",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: [{value: 4, temperature: 400 K}], source: x}",
+            Rule::BadTemperature,
+            "400 K",
+        ),
+        (
+            "- {substance: a, charge: 0, pKa: 4, hazards: [acid], source: x}",
+            Rule::UnknownChoice,
+            "acid",
+        ),
+        ("- {ion: a}", Rule::MissingKey, "ion"),
+        ("- {formula: NaCl}", Rule::BadConstants, "{formula: NaCl}"),
+        (
+            "- {substance: a, charge: 0, pKa: 4, source: x}\n- {substance: a, charge: 0, pKa: 5, source: x}",
+            Rule::DuplicateSubstance,
+            "a",
+        ),
+    ];
+
     #[test]
     fn faults_of_own_constants_stand_where_they_were_typed() {
-        let rows = [
-            (
-                "- {substance: a, charge: 0, pKa: [4.2]}",
-                Rule::MissingSource,
-                "substance",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: ['4,2'], source: x}",
-                Rule::DecimalComma,
-                "'4,2'",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: [7.2, 2.1], source: x}",
-                Rule::BadConstants,
-                "2.1",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: 42, source: x}",
-                Rule::OutOfRange,
-                "42",
-            ),
-            (
-                "- {substance: a, charge: 77, pKa: 4, source: x}",
-                Rule::BadConstants,
-                "77",
-            ),
-            (
-                "- {substance: a, charge: 0, pka: 4, source: x}",
-                Rule::MissingKey,
-                "substance",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: [{value: 4, kind: thermo}], source: x}",
-                Rule::UnknownChoice,
-                "thermo",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: [{value: 4, kind: conditional}], source: x}",
-                Rule::MissingKey,
-                "value",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: [{value: 4, uncertainty: -1}], source: x}",
-                Rule::OutOfRange,
-                "-1",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: [{value: 4, temperature: 400 K}], source: x}",
-                Rule::BadTemperature,
-                "400 K",
-            ),
-            (
-                "- {substance: a, charge: 0, pKa: 4, hazards: [acid], source: x}",
-                Rule::UnknownChoice,
-                "acid",
-            ),
-            ("- {ion: a}", Rule::MissingKey, "ion"),
-            ("- {formula: NaCl}", Rule::BadConstants, "{formula: NaCl}"),
-            (
-                "- {substance: a, charge: 0, pKa: 4, source: x}\n- {substance: a, charge: 0, pKa: 5, source: x}",
-                Rule::DuplicateSubstance,
-                "a",
-            ),
-        ];
-        for (text, rule, place) in rows {
+        for (text, rule, place) in FAULTS {
             let mut found = Vec::new();
             assert_eq!(constants(text, &mut found), None, "{text}");
             let rules: Vec<Rule> = found.iter().map(Diagnostic::rule).collect();

@@ -248,108 +248,111 @@ mod tests {
         assert_eq!(input.replicates.len(), 3);
     }
 
+    /// An item, the rule that it breaks, the place and what is said to help.
+    const FAULTS: [(&str, Rule, &str, &str); 18] = [
+        ("substance: NaCl", Rule::AmountNeeded, "NaCl", "`mass`"),
+        ("mass: 1 g", Rule::MissingKey, "mass", "`substance: ...`"),
+        (
+            "substance: NaCl, mas: 1 g, mass: 2 g",
+            Rule::UnknownKey,
+            "mas",
+            "`mass`",
+        ),
+        (
+            "substance: NaCl, mass: 1 g, amount: 1 mol",
+            Rule::TooManyAmounts,
+            "NaCl",
+            "one of",
+        ),
+        (
+            "substance: HCl, volume: 1 mL",
+            Rule::AmountNeeded,
+            "1 mL",
+            "concentration",
+        ),
+        (
+            "substance: HCl, concentration: 37 % w/w",
+            Rule::AmountNeeded,
+            "37 % w/w",
+            "volume",
+        ),
+        (
+            "substance: HCl, volume: 1 mL, concentration: 37 % w/w",
+            Rule::DensityNeeded,
+            "37 % w/w",
+            "density",
+        ),
+        (
+            "substance: HCl, mass: 1 g, concentration: 1 mol/L",
+            Rule::DensityNeeded,
+            "1 mol/L",
+            "% w/w",
+        ),
+        (
+            "substance: HCl, volume: 1 mL, concentration: 137 % w/w",
+            Rule::OutOfRange,
+            "137 % w/w",
+            "110",
+        ),
+        (
+            "substance: NaCl, mass: 1 g, density: 2 g/mL",
+            Rule::ConflictingKeys,
+            "2 g/mL",
+            "",
+        ),
+        (
+            "substance: NaCl, mass: 1 g, factor: 1.01",
+            Rule::ConflictingKeys,
+            "1.01",
+            "",
+        ),
+        (
+            "substance: NaCl, concentration: 1 mol/L, purity: 99 %",
+            Rule::ConflictingKeys,
+            "99 %",
+            "",
+        ),
+        (
+            "substance: NaCl, mass: 1 g, purity: 99 %, assay: 98 %",
+            Rule::ConflictingKeys,
+            "98 %",
+            "",
+        ),
+        (
+            "substance: NaCl, mass: 1 g, water: 100 %",
+            Rule::OutOfRange,
+            "100 %",
+            "below",
+        ),
+        (
+            "substance: HCl, concentration: 1 mol/L, factor: -1",
+            Rule::OutOfRange,
+            "-1",
+            "above 0",
+        ),
+        (
+            "substance: NaCl, mass: 1 g, replicates: [1 g, 2 g]",
+            Rule::ConflictingKeys,
+            "[1 g, 2 g]",
+            "",
+        ),
+        (
+            "substance: NaCl, replicates: [1 g]",
+            Rule::EmptyList,
+            "[1 g]",
+            "[19.21 g, 19.22 g]",
+        ),
+        (
+            "substance: NaCl, replicates: [1 g, 2 mg]",
+            Rule::EmptyList,
+            "[1 g, 2 mg]",
+            "",
+        ),
+    ];
+
     #[test]
     fn faults_of_an_item_stand_where_they_are() {
-        for (item, rule, place, help) in [
-            ("substance: NaCl", Rule::AmountNeeded, "NaCl", "`mass`"),
-            ("mass: 1 g", Rule::MissingKey, "mass", "`substance: ...`"),
-            (
-                "substance: NaCl, mas: 1 g, mass: 2 g",
-                Rule::UnknownKey,
-                "mas",
-                "`mass`",
-            ),
-            (
-                "substance: NaCl, mass: 1 g, amount: 1 mol",
-                Rule::TooManyAmounts,
-                "NaCl",
-                "one of",
-            ),
-            (
-                "substance: HCl, volume: 1 mL",
-                Rule::AmountNeeded,
-                "1 mL",
-                "concentration",
-            ),
-            (
-                "substance: HCl, concentration: 37 % w/w",
-                Rule::AmountNeeded,
-                "37 % w/w",
-                "volume",
-            ),
-            (
-                "substance: HCl, volume: 1 mL, concentration: 37 % w/w",
-                Rule::DensityNeeded,
-                "37 % w/w",
-                "density",
-            ),
-            (
-                "substance: HCl, mass: 1 g, concentration: 1 mol/L",
-                Rule::DensityNeeded,
-                "1 mol/L",
-                "% w/w",
-            ),
-            (
-                "substance: HCl, volume: 1 mL, concentration: 137 % w/w",
-                Rule::OutOfRange,
-                "137 % w/w",
-                "110",
-            ),
-            (
-                "substance: NaCl, mass: 1 g, density: 2 g/mL",
-                Rule::ConflictingKeys,
-                "2 g/mL",
-                "",
-            ),
-            (
-                "substance: NaCl, mass: 1 g, factor: 1.01",
-                Rule::ConflictingKeys,
-                "1.01",
-                "",
-            ),
-            (
-                "substance: NaCl, concentration: 1 mol/L, purity: 99 %",
-                Rule::ConflictingKeys,
-                "99 %",
-                "",
-            ),
-            (
-                "substance: NaCl, mass: 1 g, purity: 99 %, assay: 98 %",
-                Rule::ConflictingKeys,
-                "98 %",
-                "",
-            ),
-            (
-                "substance: NaCl, mass: 1 g, water: 100 %",
-                Rule::OutOfRange,
-                "100 %",
-                "below",
-            ),
-            (
-                "substance: HCl, concentration: 1 mol/L, factor: -1",
-                Rule::OutOfRange,
-                "-1",
-                "above 0",
-            ),
-            (
-                "substance: NaCl, mass: 1 g, replicates: [1 g, 2 g]",
-                Rule::ConflictingKeys,
-                "[1 g, 2 g]",
-                "",
-            ),
-            (
-                "substance: NaCl, replicates: [1 g]",
-                Rule::EmptyList,
-                "[1 g]",
-                "[19.21 g, 19.22 g]",
-            ),
-            (
-                "substance: NaCl, replicates: [1 g, 2 mg]",
-                Rule::EmptyList,
-                "[1 g, 2 mg]",
-                "",
-            ),
-        ] {
+        for (item, rule, place, help) in FAULTS {
             let keys = format!("volume: 1 L\ncontents:\n  - {{{item}}}\n");
             one_fault("speciation", &keys, rule, place, help);
         }

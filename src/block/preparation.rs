@@ -331,6 +331,15 @@ mod tests {
                 "37 % w/w",
                 "density",
             ),
+        ] {
+            one_fault("preparation", &keys, rule, place, help);
+        }
+    }
+
+    #[test]
+    fn faults_of_a_target() {
+        let from = "from: [tris, hydrochloric acid]\n";
+        for (keys, rule, place, help) in [
             (
                 format!("{from}target: {{pH: 20, volume: 1 L, concentration: 1 mol/L}}\n"),
                 Rule::OutOfRange,

@@ -161,7 +161,7 @@ mod tests {
         )
         .unwrap();
         assert!(table.in_millivolts);
-        assert_eq!(table.points[2].signal, -12.0);
+        assert!((table.points[2].signal + 12.0).abs() < 1e-12);
     }
 
     #[test]

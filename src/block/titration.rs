@@ -285,6 +285,14 @@ mod tests {
                 "",
             ),
             (keys("points: 1\n"), Rule::OutOfRange, "1", "from 2 to"),
+        ] {
+            one_fault("titration", &keys, rule, place, help);
+        }
+    }
+
+    #[test]
+    fn faults_of_readings_and_fit() {
+        for (keys, rule, place, help) in [
             (
                 keys("readings: no.csv\n"),
                 Rule::MissingAttachment,

@@ -262,3 +262,74 @@ pub struct Trace {
     /// Expiry, as written.
     pub expiry: Option<String>,
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::quantity::{Decimal, Measured, Unit};
+
+    fn litres(key: &str) -> Input<Volume> {
+        let measured = Measured::new(Decimal::whole(1), Unit::Litre).unwrap();
+        Input::new(InputId::new(key), measured)
+    }
+
+    fn reference(page: Option<&str>, label: &str) -> SolutionReference {
+        SolutionReference {
+            page: page.map(str::to_owned),
+            label: label.to_owned(),
+        }
+    }
+
+    /// A liquid with water and a portion of another block's.
+    fn using(of: &SolutionReference, composition: &Composition) -> Composition {
+        Composition {
+            made_up: MadeUp::SumOfPortions,
+            ingredients: vec![Ingredient::Solution(SolutionPortion {
+                volume: litres("portion"),
+                reference: Some(of.clone()),
+                composition: Arc::new(composition.seen_from(of)),
+            })],
+        }
+    }
+
+    fn inside(composition: &Composition) -> &SolutionPortion {
+        match composition.ingredients.as_slice() {
+            [Ingredient::Solution(portion)] => portion,
+            other => panic!("{other:?}"),
+        }
+    }
+
+    fn water_id(composition: &Composition) -> &str {
+        match composition.ingredients.as_slice() {
+            [Ingredient::Water(volume)] => volume.id.as_str(),
+            other => panic!("{other:?}"),
+        }
+    }
+
+    #[test]
+    fn a_block_of_another_page_keeps_its_page_however_far_it_travels() {
+        let stock = Composition {
+            made_up: MadeUp::SumOfPortions,
+            ingredients: vec![Ingredient::Water(litres("water"))],
+        };
+        let near = reference(None, "stock");
+        let far = reference(Some("stocks.md"), "stock");
+        let buffer = using(&near, &stock);
+        assert_eq!(water_id(&inside(&buffer).composition), "stock : water");
+        // The same stock by way of a block of its page, and directly: one quantity, one name.
+        let by_way = using(&reference(Some("stocks.md"), "buffer"), &buffer);
+        let direct = using(&far, &stock);
+        let deep = inside(&inside(&by_way).composition);
+        assert_eq!(deep.volume.id.as_str(), "stocks.md#buffer : portion");
+        assert_eq!(deep.reference, Some(far));
+        assert_eq!(water_id(&deep.composition), "stocks.md#stock : water");
+        assert_eq!(
+            water_id(&inside(&direct).composition),
+            water_id(&deep.composition)
+        );
+        // On one page nothing is named by page.
+        let same_page = using(&reference(None, "buffer"), &buffer);
+        let deep = inside(&inside(&same_page).composition);
+        assert_eq!(water_id(&deep.composition), "stock : water");
+    }
+}
