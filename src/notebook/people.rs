@@ -76,10 +76,10 @@ impl People {
         people.insert(signer.to_owned(), person.clone());
         let mut text = String::from("# Printed names and roles of signers.\n");
         for (signer, person) in people {
-            text.push_str(&format!("{signer}:\n  name: {}\n", quoted(&person.name)));
+            text.extend([signer.as_str(), ":\n  name: ", &quoted(&person.name), "\n"]);
             if !person.roles.is_empty() {
                 let roles: Vec<String> = person.roles.iter().map(|role| quoted(role)).collect();
-                text.push_str(&format!("  roles: [{}]\n", roles.join(", ")));
+                text.extend(["  roles: [", &roles.join(", "), "]\n"]);
             }
         }
         text

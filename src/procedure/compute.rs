@@ -2,6 +2,7 @@
 
 use crate::notebook::{FileError, ReplaceError, create, read_page, replace};
 use crate::page::{PAGE_LIMIT, Page, PageError, Written};
+use crate::procedure::claim::is_of_this_question;
 use crate::procedure::page_work::{BlockWork, PageWork};
 use crate::procedure::{Desk, DeskError};
 use crate::report::{self, DRAFT_NOTICE};
@@ -67,6 +68,8 @@ pub enum Standing {
     Unchanged,
     /// It is sealed and was left alone.
     Sealed,
+    /// It is sealed and was left alone, and its block was changed since.
+    SealedOtherwise,
 }
 
 /// Why a page could not be worked on at all.
@@ -139,7 +142,7 @@ pub fn compute_text(
         let (edit, standing) = drafted(&work, item)?;
         edits.extend(edit);
         blocks.push(summary(&work, item, standing));
-        if mode == Mode::Write && standing != Standing::Sealed {
+        if mode == Mode::Write && matches!(standing, Standing::Drafted | Standing::Unchanged) {
             write_plots(desk, name, item)?;
         }
     }
@@ -169,11 +172,13 @@ fn drafted(
     work: &PageWork,
     item: &BlockWork,
 ) -> Result<(Option<crate::page::Edit>, Standing), ComputeError> {
-    let sealed = work
-        .result(&item.label)
-        .is_some_and(|region| !region.is_draft());
-    if sealed {
-        return Ok((None, Standing::Sealed));
+    if let Some(region) = work.result(&item.label).filter(|region| !region.is_draft()) {
+        let standing = if is_of_this_question(&work.page, region) {
+            Standing::Sealed
+        } else {
+            Standing::SealedOtherwise
+        };
+        return Ok((None, standing));
     }
     let (Some(rendered), Some(block)) = (&item.rendered, work.block(item)) else {
         return Ok((None, Standing::None));

@@ -4,7 +4,7 @@ use crate::notebook::{ReplaceError, create, replace};
 use crate::procedure::Desk;
 use crate::procedure::records::Records;
 use crate::procedure::surroundings::Surroundings;
-use crate::record::{self, Entry, KeyFile, Register, SignerName, Signing, Standing, TextLine};
+use crate::record::{Entry, Register, Signer, SignerName, Signing, Standing, TextLine};
 use chrono::{DateTime, FixedOffset, TimeDelta};
 use std::fs;
 use std::path::PathBuf;
@@ -17,7 +17,7 @@ pub(super) struct Hand<'s> {
     /// Whether the signer is on the roster.
     pub(super) on_roster: bool,
     printed: TextLine,
-    key: KeyFile,
+    key: Box<dyn Signer>,
     offset_minutes: i32,
     addition: String,
 }
@@ -61,7 +61,7 @@ impl<'s> Hand<'s> {
         desk: &Desk,
         mut records: Records,
         surroundings: &'s Surroundings<'s>,
-        (signer, key): (SignerName, KeyFile),
+        (signer, key): (SignerName, Box<dyn Signer>),
         printed: Option<&str>,
     ) -> Result<Self, HandError> {
         let offset_minutes = desk
@@ -69,7 +69,7 @@ impl<'s> Hand<'s> {
             .as_ref()
             .map_or(0, |notebook| notebook.offset_minutes);
         let now = surroundings.clock.now(offset_minutes);
-        let public = record::Signer::public_key(&key);
+        let public = key.public_key();
         let refused = |standing| HandError::NotOnRoster {
             signer: signer.clone(),
             standing,
@@ -110,9 +110,13 @@ impl<'s> Hand<'s> {
         self.surroundings.clock.now(self.offset_minutes)
     }
 
-    /// Everything that a signature needs.
-    pub(super) fn signing<'a>(&'a self, note: Option<&'a TextLine>) -> Signing<'a> {
-        Signing {
+    /// Signs with everything that a signature needs.
+    pub(super) fn sign<R>(
+        &self,
+        note: Option<&TextLine>,
+        act: impl FnOnce(&Signing<'_>) -> R,
+    ) -> R {
+        act(&Signing {
             signer: &self.signer,
             name: &self.printed,
             time: self.now(),
@@ -121,8 +125,16 @@ impl<'s> Hand<'s> {
             roster: &self.records.roster,
             policy: &self.records.policy,
             people: &self.records.people,
-            key: &self.key,
-        }
+            key: self.key.as_ref(),
+        })
+    }
+
+    /// The signer's register as it is with what was taken into it.
+    pub(super) fn register(&self) -> Option<&Register> {
+        self.records
+            .registers
+            .iter()
+            .find(|register| *register.signer() == self.signer)
     }
 
     /// Takes an act into the signer's register, in memory.

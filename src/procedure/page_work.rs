@@ -119,7 +119,7 @@ impl PageWork {
                 attachments: reading.attachments,
             };
             if solving && let Some(statement) = &item.statement {
-                match finished(desk, name, statement) {
+                match rendered(desk, name, statement) {
                     Ok((answer, rendered, template)) => {
                         item.answer = Some(answer);
                         item.rendered = Some(rendered);
@@ -137,7 +137,7 @@ impl PageWork {
         work
     }
 
-    /// Solves and renders one statement at a desk; the defaults are not yet among its constants.
+    /// Solves and renders one statement at a desk.
     ///
     /// # Errors
     /// Why not, in a sentence part.
@@ -200,16 +200,6 @@ impl Failure {
     }
 }
 
-fn finished(
-    desk: &Desk,
-    name: &str,
-    statement: &Statement,
-) -> Result<(Answer, Rendered, Template), Failure> {
-    let (answer, mut rendered, template) = rendered(desk, name, statement)?;
-    rendered.markdown = with_defaults(&rendered.markdown, &desk.defaults.lines());
-    Ok((answer, rendered, template))
-}
-
 fn rendered(
     desk: &Desk,
     name: &str,
@@ -227,34 +217,10 @@ fn rendered(
 /// What opens the last fence of an answer.
 const CONSTANTS_FENCE: &str = "```constants\n";
 
-/// What a line of the constants says of a default that bore on the block.
-const DEFAULT_LINE: &str = "# where the block is silent: ";
-
-/// The answer with the defaults that held, as remarks in its `constants` block: with them it can be computed again when the settings have changed.
-pub(super) fn with_defaults(markdown: &str, lines: &[String]) -> String {
-    let remarks: String = lines
-        .iter()
-        .map(|line| format!("{DEFAULT_LINE}{line}\n"))
-        .collect();
-    match markdown.rfind(CONSTANTS_FENCE) {
-        Some(at) => {
-            let (before, after) = markdown.split_at(at + CONSTANTS_FENCE.len());
-            format!("{before}{remarks}{after}")
-        }
-        None => markdown.to_owned(),
-    }
-}
-
-/// The `constants` block of an answer and the defaults that it names.
-pub(super) fn embedded(answer: &str) -> Option<(String, Vec<String>)> {
+/// The content of the `constants` block of an answer.
+pub(super) fn embedded(answer: &str) -> Option<&str> {
     let at = answer.rfind(CONSTANTS_FENCE)?;
-    let inside = answer
+    answer
         .get(at + CONSTANTS_FENCE.len()..)?
-        .strip_suffix("```\n")?;
-    let defaults = inside
-        .lines()
-        .filter_map(|line| line.strip_prefix(DEFAULT_LINE))
-        .map(str::to_owned)
-        .collect();
-    Some((inside.to_owned(), defaults))
+        .strip_suffix("```\n")
 }
