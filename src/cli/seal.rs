@@ -25,14 +25,24 @@ pub(super) fn run(
         }
     };
     let mut status = ExitStatus::AllWell;
+    let mut unlisted = None;
     for path in &arguments.pages {
         match seal_page(path, &request, surroundings) {
-            Ok(sealed) => status = status.and(told(path, &sealed, surroundings, terminal)),
+            Ok(sealed) => {
+                status = status.and(told(path, &sealed, surroundings, terminal));
+                unlisted = sealed.signer.filter(|_| !sealed.on_roster).or(unlisted);
+            }
             Err(error) => {
                 terminal.say(&format!("{}: {error}", path.display()));
                 status = status.and(failed(&error));
             }
         }
+    }
+    if let Some(signer) = unlisted {
+        terminal.say(&format!(
+            "{signer} is not on a roster yet: the signature shows that nothing was altered, but not whose it is. `ionfolio signer enrol` puts \
+             the public key on the notebook's roster."
+        ));
     }
     status
 }
@@ -100,12 +110,6 @@ fn told(
             "Signed by {signer}; register: {}",
             register.display()
         ));
-        if !sealed.on_roster {
-            terminal.say(&format!(
-                "{signer} is not on a roster yet: the signature shows that nothing was altered, but not whose it is. `ionfolio signer enrol` puts \
-                 the public key on the notebook's roster."
-            ));
-        }
     }
     if sealed.blocks.iter().any(|block| !block.now) {
         return verify::sealed(path, surroundings, terminal);

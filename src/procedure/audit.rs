@@ -177,3 +177,51 @@ pub fn audit(
         &surroundings.program.name,
     ))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::amend_page;
+    use crate::procedure::specimen::{ACETIC, Laboratory};
+
+    fn audited(laboratory: &Laboratory) -> Audit {
+        let notebook = laboratory.path("notebook");
+        audit(&notebook, None, &laboratory.surroundings()).unwrap()
+    }
+
+    #[test]
+    fn an_amendment_keeps_what_was_signed_and_says_why() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        amend_page(&laboratory.page(), "acid", "lot was K-2292").unwrap();
+        laboratory.change("notebook/rinse.md", "0.100 mol/L", "0.200 mol/L");
+        laboratory.seal().unwrap();
+        let audit = audited(&laboratory);
+        assert!(!audit.failed(), "{:?}", audit.findings);
+        let states: Vec<&str> = audit.results.iter().map(|result| result.state).collect();
+        assert_eq!(states, ["superseded", "sealed"]);
+        assert_eq!(audit.results[1].reason.as_deref(), Some("lot was K-2292"));
+        assert_eq!(audit.acts.len(), 2);
+        assert!(
+            audit
+                .constants
+                .iter()
+                .any(|constant| constant.used_in.len() == 1)
+        );
+    }
+
+    #[test]
+    fn a_result_that_is_gone_from_its_page_is_in_the_report() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        laboratory.write("notebook/rinse.md", "# Rinse\n");
+        let audit = audited(&laboratory);
+        let names: Vec<&str> = audit
+            .findings
+            .iter()
+            .map(|found| found.name.as_str())
+            .collect();
+        assert!(names.contains(&"act-missing-from-page"), "{names:?}");
+        assert!(audit.failed());
+    }
+}

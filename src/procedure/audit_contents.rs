@@ -42,7 +42,9 @@ pub(super) fn contents(
     Audit {
         title: examined.notebook.title.clone(),
         notebook: examined.notebook.identity.clone(),
-        time: examined.now.to_rfc3339(),
+        time: examined
+            .now
+            .to_rfc3339_opts(chrono::SecondsFormat::Secs, false),
         program: program.to_owned(),
         keeper: keeper.map(str::to_owned),
         pages: pages.len(),

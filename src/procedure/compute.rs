@@ -266,3 +266,47 @@ fn place_lines(blocks: &mut [ComputedBlock], bytes: &[u8]) {
             .map(|region| index.line_column(region.span().start()).line);
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::specimen::{ACETIC, Laboratory};
+
+    #[test]
+    fn a_second_run_changes_nothing_and_a_sealed_result_is_left_alone() {
+        let laboratory = Laboratory::with(ACETIC);
+        let run = |mode| compute_page(&laboratory.page(), mode).unwrap();
+        assert!(!run(Mode::DryRun).written && !run(Mode::Check).written);
+        assert_eq!(laboratory.read("notebook/rinse.md"), ACETIC);
+        assert!(run(Mode::Write).written);
+        let again = run(Mode::Write);
+        assert!(!again.written && again.blocks[0].standing == Standing::Unchanged);
+        laboratory.seal().unwrap();
+        let sealed = run(Mode::Write);
+        assert!(!sealed.written && sealed.blocks[0].standing == Standing::Sealed);
+        laboratory.change("notebook/rinse.md", "0.100 mol/L", "0.200 mol/L");
+        let changed = run(Mode::Write);
+        assert!(!changed.written);
+        assert_eq!(changed.blocks[0].standing, Standing::SealedOtherwise);
+    }
+
+    #[test]
+    fn a_circle_of_blocks_is_an_error_and_no_recursion() {
+        let block = |label: &str, from: &str| {
+            format!(
+                "```equilibrium\nlabel: {label}\ntask: mixing\nportions:\n  - volume: 1.00 mL\n    solution: {from}\n  - volume: 1.00 mL\n    contents: water\n```\n"
+            )
+        };
+        let laboratory = Laboratory::with(&(block("a", "b") + &block("b", "a")));
+        let computed = compute_page(&laboratory.page(), Mode::Write).unwrap();
+        assert!(
+            computed
+                .faults
+                .iter()
+                .filter(|fault| fault.is_error())
+                .count()
+                >= 2
+        );
+        assert!(!computed.written);
+    }
+}

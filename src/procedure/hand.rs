@@ -4,7 +4,7 @@ use crate::notebook::{ReplaceError, create, replace};
 use crate::procedure::Desk;
 use crate::procedure::records::Records;
 use crate::procedure::surroundings::Surroundings;
-use crate::record::{Entry, Register, Signer, SignerName, Signing, Standing, TextLine};
+use crate::record::{Entry, PublicKey, Register, Signer, SignerName, Signing, Standing, TextLine};
 use chrono::{DateTime, FixedOffset, TimeDelta};
 use std::fs;
 use std::path::PathBuf;
@@ -85,14 +85,7 @@ impl<'s> Hand<'s> {
             Standing::NotYet(_) => return Err(refused("its dates have not begun")),
             Standing::Retired(_) => return Err(refused("it is retired")),
         }
-        let text = printed.map_or_else(|| signer.to_string(), str::to_owned);
-        let known = records
-            .printed_name(&signer)
-            .filter(|name| name.as_str() != signer.as_str());
-        let printed = match known {
-            Some(name) => name,
-            None => TextLine::new(&text).map_err(|_fault| HandError::Name { printed: text })?,
-        };
+        let printed = printed_name(&records, &signer, public, printed)?;
         Ok(Self {
             on_roster: standing == Standing::Valid,
             records,
@@ -174,4 +167,33 @@ impl<'s> Hand<'s> {
         }
         Ok(Some(path))
     }
+}
+
+/// The printed name: as `people.yaml` has it; else as it was said; else as the signer's last act with this key has it; else the signer's name.
+fn printed_name(
+    records: &Records,
+    signer: &SignerName,
+    key: &PublicKey,
+    said: Option<&str>,
+) -> Result<TextLine, HandError> {
+    if let Some(known) = records
+        .people
+        .iter()
+        .find(|person| person.signer == *signer)
+    {
+        return Ok(known.name.clone());
+    }
+    let with_this_key = |entry: &&Entry| {
+        let public = entry.act.signature().public_key();
+        entry.act.act().signer == *signer && public.is_ok_and(|public| public.is_same_key(key))
+    };
+    let mut entries = records.registers.iter().flat_map(Register::entries).rev();
+    let text = match (said, entries.find(with_this_key)) {
+        (Some(said), _) => said,
+        (None, Some(entry)) => return Ok(entry.act.act().name.clone()),
+        (None, None) => signer.as_str(),
+    };
+    TextLine::new(text).map_err(|_fault| HandError::Name {
+        printed: text.to_owned(),
+    })
 }

@@ -60,7 +60,7 @@ pub fn make_key(
     let text = key.print(lock.as_ref()).map_err(|error| at(&path, error))?;
     write_private(&path, text.as_bytes())?;
     let public = key_public_line(&key);
-    write_public(&path.with_extension("pub"), public.as_bytes())?;
+    write_public(&folder.join(format!("{signer}.pub")), public.as_bytes())?;
     Ok(KeyMade {
         signer: signer.clone(),
         fingerprint: key.public_key().fingerprint(),
@@ -156,4 +156,42 @@ fn write_with(options: &OpenOptions, path: &Path, bytes: &[u8]) -> Result<(), Si
     let mut file = options.open(path).map_err(system)?;
     file.write_all(bytes).map_err(system)?;
     file.sync_all().map_err(system)
+}
+
+#[cfg(all(test, unix))]
+mod tests {
+    use super::*;
+    use crate::procedure::specimen::{ACETIC, Laboratory};
+    use crate::procedure::{SealError, signer_name};
+    use std::os::unix::fs::PermissionsExt;
+
+    #[test]
+    fn each_signer_has_files_of_their_own() {
+        let laboratory = Laboratory::with(ACETIC);
+        let signer = signer_name("Bench Reviewer").unwrap();
+        make_key(&laboratory.surroundings(), &signer, None).unwrap();
+        let again = make_key(&laboratory.surroundings(), &signer, None);
+        assert!(matches!(again, Err(SignerError::Exists { .. })));
+        let (one, other) = ("keys/bench.analyst.pub", "keys/bench.reviewer.pub");
+        assert_ne!(laboratory.read(one), laboratory.read(other));
+        let mode = |name| {
+            fs::metadata(laboratory.path(name))
+                .unwrap()
+                .permissions()
+                .mode()
+        };
+        assert_eq!(mode("keys") & 0o777, 0o700);
+        assert_eq!(mode("keys/bench.analyst") & 0o777, 0o600);
+    }
+
+    #[test]
+    fn a_key_that_others_may_read_does_not_sign() {
+        let laboratory = Laboratory::with(ACETIC);
+        let path = laboratory.path("keys/bench.analyst");
+        fs::set_permissions(&path, fs::Permissions::from_mode(0o644)).unwrap();
+        let refused = laboratory.seal();
+        let exposed = matches!(refused, Err(SealError::Signer(SignerError::Exposed { .. })));
+        assert!(exposed, "{refused:?}");
+        assert_eq!(laboratory.read("notebook/rinse.md"), ACETIC);
+    }
 }

@@ -164,6 +164,13 @@ fn constant_lines(word: &str, constant: &Constant) -> Vec<String> {
             constant.basis.word()
         ),
     ];
+    lines.extend(temperature_lines(constant));
+    lines
+}
+
+/// How a constant depends on temperature, as far as is known.
+fn temperature_lines(constant: &Constant) -> Vec<String> {
+    let mut lines = Vec::new();
     if let Some(thermal) = &constant.thermal {
         let capacity = thermal
             .heat_capacity

@@ -22,6 +22,7 @@ mod inspection;
 mod key_file;
 mod library;
 mod page_work;
+mod plot_names;
 mod recomputation;
 mod records;
 mod roster;
@@ -29,6 +30,8 @@ mod seal;
 mod sealing;
 mod signer;
 mod sources;
+#[cfg(test)]
+mod specimen;
 mod trust;
 mod verify;
 

@@ -4,6 +4,7 @@ use crate::block::{self, Places};
 use crate::page::{Block, Page, Region};
 use crate::problem::{SolutionReference, Statement};
 use crate::procedure::Desk;
+use crate::procedure::plot_names::{generation, numbered};
 use crate::procedure::sources::Sources;
 use crate::report::{self, Rendered, Template};
 use crate::solution::{self, Unsolvable, answer::Answer};
@@ -68,44 +69,25 @@ impl PageWork {
             blocks: Vec::new(),
             page: Rc::clone(&page),
         };
-        if page.blocks().len() > MOST_BLOCKS {
-            let span = page.blocks().first().map_or(Span::at(0), Block::opening);
-            work.faults.push(Diagnostic::error(
-                Rule::TooManyBlocks,
-                span,
-                format!(
-                    "the page has {} blocks; at most {MOST_BLOCKS} are read",
-                    page.blocks().len()
-                ),
-            ));
+        if let Some(fault) = too_many(&page) {
+            work.faults.push(fault);
             return work;
         }
         let mut labels: BTreeMap<String, Span> = BTreeMap::new();
         for (index, block) in page.blocks().iter().enumerate() {
             let outline = block::outline(block.content().text());
             let here = sources.for_block(outline.label.as_deref().unwrap_or_default());
-            let reading = block::read(block.content().text(), &here.context());
+            let mut reading = block::read(block.content().text(), &here.context());
             let excerpt = block.content();
-            work.faults.extend(
-                reading
-                    .diagnostics
-                    .into_iter()
-                    .map(|fault| fault.in_page(excerpt)),
-            );
-            let Some((label, excerpt_span)) = reading.label else {
+            let faults = std::mem::take(&mut reading.diagnostics);
+            work.faults
+                .extend(faults.into_iter().map(|fault| fault.in_page(excerpt)));
+            let Some((label, label_span)) = reading.label else {
                 continue;
             };
-            let span = excerpt.in_page(excerpt_span);
+            let span = excerpt.in_page(label_span);
             if let Some(first) = labels.insert(label.to_string(), span) {
-                work.faults.push(
-                    Diagnostic::error(
-                        Rule::DuplicateLabel,
-                        span,
-                        format!("the label `{label}` stands twice in this page"),
-                    )
-                    .and(first, "first here")
-                    .helped("give this block a label of its own"),
-                );
+                work.faults.push(twice(&label.to_string(), span, first));
                 continue;
             }
             let mut item = BlockWork {
@@ -118,19 +100,9 @@ impl PageWork {
                 references: reading.references,
                 attachments: reading.attachments,
             };
-            if solving && let Some(statement) = &item.statement {
-                match rendered(desk, name, statement) {
-                    Ok((answer, rendered, template)) => {
-                        item.answer = Some(answer);
-                        item.rendered = Some(rendered);
-                        item.template = Some(template);
-                    }
-                    Err(failure) => {
-                        let label = excerpt_span;
-                        work.faults
-                            .push(failure.diagnostic(&reading.places, label).in_page(excerpt));
-                    }
-                }
+            if solving && let Err(failure) = item.solve(desk, name, &page) {
+                let fault = failure.diagnostic(&reading.places, label_span);
+                work.faults.push(fault.in_page(excerpt));
             }
             work.blocks.push(item);
         }
@@ -170,6 +142,40 @@ impl PageWork {
             .iter()
             .find(|region| region.label() == label && region.mark().is_none())
     }
+}
+
+impl BlockWork {
+    fn solve(&mut self, desk: &Desk, name: &str, page: &Page) -> Result<(), Failure> {
+        if let Some(statement) = &self.statement {
+            let (answer, rendered, template) = rendered(desk, name, statement)?;
+            self.answer = Some(answer);
+            self.rendered = Some(numbered(rendered, generation(page, &self.label)));
+            self.template = Some(template);
+        }
+        Ok(())
+    }
+}
+
+fn too_many(page: &Page) -> Option<Diagnostic> {
+    let count = page.blocks().len();
+    let span = page.blocks().first().map_or(Span::at(0), Block::opening);
+    (count > MOST_BLOCKS).then(|| {
+        Diagnostic::error(
+            Rule::TooManyBlocks,
+            span,
+            format!("the page has {count} blocks; at most {MOST_BLOCKS} are read"),
+        )
+    })
+}
+
+fn twice(label: &str, span: Span, first: Span) -> Diagnostic {
+    Diagnostic::error(
+        Rule::DuplicateLabel,
+        span,
+        format!("the label `{label}` stands twice in this page"),
+    )
+    .and(first, "first here")
+    .helped("give this block a label of its own")
 }
 
 /// Why a block has no result.

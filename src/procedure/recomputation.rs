@@ -4,6 +4,7 @@ use crate::block::{self, Context, Defaults};
 use crate::page::{Page, Region};
 use crate::procedure::Desk;
 use crate::procedure::page_work::{PageWork, embedded};
+use crate::procedure::plot_names::{generation, numbered, sealed_generation};
 use crate::procedure::sources::Sources;
 use crate::procedure::surroundings::Program;
 use crate::record::{Digest, Statement, TextLine};
@@ -98,7 +99,11 @@ impl Again<'_> {
                 "the question is not read with the constants of the answer: {first}"
             ));
         };
-        let rendered = PageWork::finish(&desk, self.name, &stated)?;
+        // Plots are named after the page on which the result was signed.
+        let rendered = PageWork::finish(&desk, statement.page.as_str(), &stated)?;
+        let latest = generation(self.page, region.label());
+        let signed = sealed_generation(&rendered, statement, latest);
+        let rendered = numbered(rendered, signed);
         if rendered.markdown == answer {
             return Ok(Recomputed::Same);
         }

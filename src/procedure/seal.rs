@@ -252,3 +252,87 @@ pub(super) fn with_cause(error: &record::SealError) -> String {
     };
     holder.map_or_else(|| error.to_string(), |cause| format!("{error}: {cause}"))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::Recomputed;
+    use crate::procedure::specimen::{ACETIC, Laboratory, MADE_FROM};
+
+    #[test]
+    fn what_is_sealed_verifies_and_stays_as_it_is() {
+        let laboratory = Laboratory::with(ACETIC);
+        let sealed = laboratory.seal().unwrap();
+        assert!(sealed.blocks[0].now && !sealed.on_roster);
+        let page = laboratory.read("notebook/rinse.md");
+        assert!(page.ends_with("\r\n\r\nEnd  \r\n"));
+        let verified = laboratory.verify();
+        assert_eq!(verified.results[0].recomputed, Recomputed::Same);
+        assert_eq!(verified.results[0].findings, []);
+        assert!(!laboratory.seal().unwrap().blocks[0].now);
+        assert_eq!(laboratory.read("notebook/rinse.md"), page);
+    }
+
+    #[test]
+    fn a_run_stopped_before_the_page_was_written_is_named_and_completed() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        let sealed = laboratory.read("notebook/rinse.md");
+        let register = laboratory.read("notebook/registers/bench.analyst.md");
+        laboratory.write("notebook/rinse.md", ACETIC);
+        let examined = crate::procedure::examine(
+            &laboratory.path("notebook"),
+            None,
+            &laboratory.surroundings(),
+        );
+        let findings = examined.unwrap().findings;
+        assert_eq!(findings[0].name(), "act-missing-from-page");
+        laboratory.seal().unwrap();
+        assert_eq!(laboratory.read("notebook/rinse.md"), sealed);
+        assert_eq!(
+            laboratory.read("notebook/registers/bench.analyst.md"),
+            register
+        );
+    }
+
+    #[test]
+    fn sources_are_sealed_before_what_is_made_from_them() {
+        let laboratory = Laboratory::with(MADE_FROM);
+        laboratory.seal().unwrap();
+        let verified = laboratory.verify();
+        let numbers: Vec<u64> = verified
+            .results
+            .iter()
+            .map(|result| result.acts()[0].act().number)
+            .collect();
+        assert_eq!(numbers, [2, 1]);
+        let uses = &verified.results[0].statement().unwrap().uses;
+        assert_eq!(uses[0].name.to_string(), "rinse.md#stock");
+        assert_eq!(verified.results[0].recomputed, Recomputed::Same);
+    }
+
+    #[test]
+    fn nothing_is_made_from_a_source_that_is_not_sealed_as_it_stands() {
+        let laboratory = Laboratory::with(MADE_FROM);
+        let only = |label: &str| {
+            let request = SealRequest {
+                label: Some(label.to_owned()),
+                key: KeyChoice::default(),
+                printed: None,
+            };
+            seal_page(&laboratory.page(), &request, &laboratory.surroundings())
+        };
+        let draft = only("diluted");
+        assert!(
+            matches!(draft, Err(SealError::SourceNotSealed { .. })),
+            "{draft:?}"
+        );
+        only("stock").unwrap();
+        laboratory.change("notebook/rinse.md", "0.100 mol/L", "0.200 mol/L");
+        let changed = only("diluted");
+        assert!(
+            matches!(changed, Err(SealError::SourceChanged { .. })),
+            "{changed:?}"
+        );
+    }
+}

@@ -113,9 +113,17 @@ pub fn signer_name(printed: &str) -> Result<SignerName, SignerError> {
             other => other,
         })
         .collect();
-    SignerName::new(&plain).map_err(|_fault| SignerError::Name {
+    let unusable = || SignerError::Name {
         name: printed.to_owned(),
-    })
+    };
+    // A key's public half stands beside it under the name with `.pub`.
+    if Path::new(&plain)
+        .extension()
+        .is_some_and(|end| end == "pub")
+    {
+        return Err(unusable());
+    }
+    SignerName::new(&plain).map_err(|_fault| unusable())
 }
 
 /// Which key is to sign.

@@ -194,3 +194,74 @@ pub(super) fn opened(desk: &Desk, path: &Path) -> Result<VerifiedPage, ComputeEr
 pub(super) fn offset_of(notebook: Option<&Notebook>) -> i32 {
     notebook.map_or(0, |notebook| notebook.offset_minutes)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::specimen::{ACETIC, Laboratory, SETTINGS};
+
+    #[test]
+    fn whatever_is_altered_is_found() {
+        let page = "notebook/rinse.md";
+        for (file, before, after, found) in [
+            (
+                page,
+                "acetic acid: 0.100",
+                "acetic acid: 0.200",
+                "question-changed",
+            ),
+            (page, "**pH 2.8", "**pH 2.9", "answer-changed"),
+            (page, "result: pH 2.", "result: pH 3.", "record-changed"),
+            (
+                page,
+                "meaning: performed",
+                "meaning: reviewed",
+                "signature-wrong",
+            ),
+            (
+                page,
+                "name: bench.analyst",
+                "name: another",
+                "signature-wrong",
+            ),
+        ] {
+            let laboratory = Laboratory::with(ACETIC);
+            laboratory.seal().unwrap();
+            laboratory.change(file, before, after);
+            let names = laboratory.found();
+            assert!(names.contains(&found), "{before}: {names:?}");
+            assert!(laboratory.verify().results[0].failed(), "{before}");
+        }
+    }
+
+    #[test]
+    fn a_page_without_its_register_is_found() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        std::fs::remove_dir_all(laboratory.path("notebook/registers")).unwrap();
+        assert_eq!(laboratory.found(), ["act-missing-from-register"]);
+    }
+
+    #[test]
+    fn settings_that_change_later_move_no_sealed_result() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        let warmer = SETTINGS.replace("25 °C", "37 °C");
+        laboratory.write("notebook/ionfolio.yaml", &warmer);
+        let verified = laboratory.verify();
+        assert_eq!(verified.results[0].recomputed, Recomputed::Same);
+        assert_eq!(laboratory.found(), [""; 0]);
+    }
+
+    #[test]
+    fn a_page_that_was_renamed_is_moved_and_not_forged() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        let (old, new) = (laboratory.page(), laboratory.path("notebook/renamed.md"));
+        std::fs::rename(old, &new).unwrap();
+        let verified = verify_page(&new, &laboratory.surroundings()).unwrap();
+        let result = &verified.results[0];
+        assert_eq!(result.findings[0].name(), "moved-page");
+        assert!(!result.failed(), "{:?}", result.recomputed);
+    }
+}
