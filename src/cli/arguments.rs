@@ -42,14 +42,40 @@ The page is computed first. Without a key, `--new-signer \"Your Name\"` makes on
 written before the page; a run that was stopped between the two is completed by the next.
 
   ionfolio seal rinse/2026-11-03.md --new-signer \"Bench Analyst\"
-  ionfolio seal rinse/2026-11-03.md --label rb-118")]
+  ionfolio seal rinse/2026-11-03.md --label rb-118
+  ionfolio seal rinse/2026-11-03.md --signer bench.analyst --key ~/.ssh/id_ed25519.pub
+
+A key is looked for in the folder that `ionfolio signer new` names; then, for a signer on the roster, in an SSH agent and in ~/.ssh.")]
     Seal(SealArguments),
     /// Add a second person's signature to sealed results
+    #[command(after_help = "\
+What is recorded and what computing it again gives are shown side by side first; what does not verify is not signed.
+
+  ionfolio countersign rinse/2026-11-03.md --as reviewed --signer second.analyst
+  ionfolio countersign rinse/2026-11-03.md --as rejected --label rb-118 --note \"wrong lot\"")]
     Countersign(CountersignArguments),
     /// Keep a sealed result and open a draft that supersedes it
+    #[command(after_help = "\
+  ionfolio amend rinse/2026-11-03.md --label rb-118 --reason \"lot was K-2292\"
+  (correct the block in an editor)
+  ionfolio seal rinse/2026-11-03.md")]
     Amend(AmendArguments),
     /// Check records: bytes, signatures, registers, and by computing again
+    #[command(after_help = "\
+A page is checked with its signers' registers. The folder of a notebook is checked as a whole: also for acts that are gone, copies, and
+sources that were amended later.
+
+  ionfolio verify rinse/2026-11-03.md
+  ionfolio verify . --keeper SHA256:...")]
     Verify(VerifyArguments),
+    /// Report on a whole notebook for an inspector
+    #[command(after_help = "\
+Who did what when, with which constants, what was amended and why, what does not verify, what was never reviewed.
+
+  ionfolio audit . > audit.md
+  ionfolio audit . --format html > audit.html
+  ionfolio audit rinse --format csv")]
+    Audit(AuditArguments),
     /// List or show the constants library
     Constants(ConstantsArguments),
     /// A new page from a template
@@ -104,8 +130,11 @@ pub(super) struct SealArguments {
     #[arg(long)]
     pub(super) label: Option<String>,
     /// Sign with the key of this signer
-    #[arg(long)]
+    #[arg(long, value_name = "NAME", group = "whose")]
     pub(super) signer: Option<String>,
+    /// Sign with this key: a private key's file, or a `.pub` file whose private half an SSH agent holds
+    #[arg(long, value_name = "FILE", requires = "whose")]
+    pub(super) key: Option<PathBuf>,
     /// Sign as this person, and make a key if there is none
     #[arg(long, value_name = "NAME", conflicts_with = "signer")]
     pub(super) new_signer: Option<String>,
@@ -139,8 +168,11 @@ pub(super) struct CountersignArguments {
     #[arg(long)]
     pub(super) note: Option<String>,
     /// Sign with the key of this signer
-    #[arg(long)]
+    #[arg(long, value_name = "NAME", group = "whose")]
     pub(super) signer: Option<String>,
+    /// Sign with this key: a private key's file, or a `.pub` file whose private half an SSH agent holds
+    #[arg(long, value_name = "FILE", requires = "whose")]
+    pub(super) key: Option<PathBuf>,
     /// Do not ask before signing
     #[arg(long)]
     pub(super) yes: bool,
@@ -166,6 +198,35 @@ pub(super) struct VerifyArguments {
     /// How findings are printed
     #[arg(long, value_enum, default_value = "text")]
     pub(super) format: Format,
+    /// Fingerprint of the key of the roster's keeper, learnt from outside the notebook
+    #[arg(long, value_name = "SHA256:...")]
+    pub(super) keeper: Option<String>,
+}
+
+/// How an audit is written.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(super) enum ReportFormat {
+    /// Headings and tables
+    Markdown,
+    /// One page for screen and paper
+    Html,
+    /// One row for each result, act and finding
+    Csv,
+    /// One JSON array, an object for each notebook
+    Json,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct AuditArguments {
+    /// Notebooks, or folders and pages in them
+    #[arg(required = true)]
+    pub(super) paths: Vec<PathBuf>,
+    /// How the report is written
+    #[arg(long, value_enum, default_value = "markdown")]
+    pub(super) format: ReportFormat,
+    /// Fingerprint of the key of the roster's keeper, learnt from outside the notebook
+    #[arg(long, value_name = "SHA256:...")]
+    pub(super) keeper: Option<String>,
 }
 
 #[derive(Debug, Args)]
@@ -210,6 +271,9 @@ pub(super) enum SignerCommand {
     New {
         /// Printed name; the signer's name is made from it
         name: String,
+        /// Ask for a passphrase and lock the key with it
+        #[arg(long)]
+        passphrase: bool,
     },
     /// The signers of a notebook's roster
     List {

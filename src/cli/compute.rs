@@ -87,6 +87,9 @@ fn told(
         if arguments.format != Format::Json {
             terminal.say(&line(computed, block, arguments.dry_run));
         }
+        if block.standing == Standing::SealedOtherwise {
+            status = status.and(ExitStatus::Finding);
+        }
         if let Some(outside) = &block.outside_limit {
             terminal.say(&format!("{}: {}: {outside}", computed.name, block.label));
             status = status.and(ExitStatus::Finding);
@@ -107,6 +110,9 @@ fn line(computed: &Computed, block: &ComputedBlock, dry_run: bool) -> String {
         Standing::Drafted => "draft written",
         Standing::Unchanged => "draft unchanged",
         Standing::Sealed => "sealed, left alone",
+        Standing::SealedOtherwise => {
+            "sealed, left alone; its block was changed since: restore it, or use `ionfolio amend`"
+        }
     };
     let headline = block.headline.as_deref().unwrap_or("not computed");
     format!(

@@ -5,8 +5,8 @@ use crate::cli::arguments::{AmendArguments, As, CountersignArguments};
 use crate::cli::terminal::Terminal;
 use crate::procedure::surroundings::Surroundings;
 use crate::procedure::{
-    CountersignRequest, Judgement, Recomputed, amend_page, countersign_page, signer_name,
-    verify_page,
+    CountersignRequest, Judgement, KeyChoice, Recomputed, amend_page, countersign_page,
+    signer_name, verify_page,
 };
 use std::io::{BufRead, IsTerminal};
 use std::path::Path;
@@ -25,7 +25,10 @@ pub(super) fn run(
     };
     let request = CountersignRequest {
         label: arguments.label.clone(),
-        signer,
+        key: KeyChoice {
+            signer,
+            file: arguments.key.clone(),
+        },
         judgement: match arguments.meaning {
             As::Reviewed => Judgement::Reviewed,
             As::Approved => Judgement::Approved,
@@ -85,8 +88,7 @@ fn show(
         .filter(|result| !result.draft && label.is_none_or(|label| label == result.label))
     {
         let recorded = result
-            .statement
-            .as_ref()
+            .statement()
             .map(|statement| statement.result.to_string())
             .unwrap_or_default();
         let now = match &result.recomputed {

@@ -4,6 +4,7 @@
 //! everything else on standard error.
 
 mod arguments;
+mod audit;
 mod check;
 mod compute;
 mod constants;
@@ -15,6 +16,7 @@ mod explain;
 mod seal;
 mod signer;
 mod terminal;
+mod verified_json;
 mod verify;
 
 use crate::procedure::surroundings::{Program, Surroundings, System};
@@ -57,6 +59,7 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitStatus {
         }
         Command::Amend(arguments) => countersign::amend(&arguments, &mut terminal),
         Command::Verify(arguments) => verify::run(&arguments, &surroundings, &mut terminal),
+        Command::Audit(arguments) => audit::run(&arguments, &surroundings, &mut terminal),
         Command::Constants(arguments) => constants::run(&arguments, &mut terminal),
         Command::Entry(arguments) => entry::run(&arguments, &mut terminal),
         Command::Signer(arguments) => signer::run(&arguments, &surroundings, &mut terminal),

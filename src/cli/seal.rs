@@ -7,8 +7,8 @@ use crate::cli::terminal::Terminal;
 use crate::cli::{diagnostics, verify};
 use crate::procedure::surroundings::Surroundings;
 use crate::procedure::{
-    HandError, SealError, SealRequest, Sealed, SignerError, key_of, make_key, seal_page,
-    signer_name,
+    HandError, KeyChoice, SealError, SealRequest, Sealed, SignerError, has_key, make_key,
+    seal_page, signer_name,
 };
 use std::path::Path;
 
@@ -25,14 +25,24 @@ pub(super) fn run(
         }
     };
     let mut status = ExitStatus::AllWell;
+    let mut unlisted = None;
     for path in &arguments.pages {
         match seal_page(path, &request, surroundings) {
-            Ok(sealed) => status = status.and(told(path, &sealed, surroundings, terminal)),
+            Ok(sealed) => {
+                status = status.and(told(path, &sealed, surroundings, terminal));
+                unlisted = sealed.signer.filter(|_| !sealed.on_roster).or(unlisted);
+            }
             Err(error) => {
                 terminal.say(&format!("{}: {error}", path.display()));
                 status = status.and(failed(&error));
             }
         }
+    }
+    if let Some(signer) = unlisted {
+        terminal.say(&format!(
+            "{signer} is not on a roster yet: the signature shows that nothing was altered, but not whose it is. `ionfolio signer enrol` puts \
+             the public key on the notebook's roster."
+        ));
     }
     status
 }
@@ -43,34 +53,31 @@ fn request(
     surroundings: &Surroundings<'_>,
     terminal: &Terminal,
 ) -> Result<SealRequest, SignerError> {
-    let signer = match (&arguments.new_signer, &arguments.signer) {
-        (Some(printed), _) => {
-            let signer = signer_name(printed)?;
-            match key_of(surroundings, Some(&signer)) {
-                Ok(_) => {}
-                Err(SignerError::NoKey { .. }) => {
-                    let made = make_key(surroundings, &signer)?;
-                    terminal.say(&format!(
-                        "A signing key was made for {printed} ({signer}): {}",
-                        made.fingerprint
-                    ));
-                    terminal.say(&format!(
-                        "  private key: {}, {}",
-                        made.path.display(),
-                        made.permissions
-                    ));
-                    terminal.say("  It never enters the notebook. Keep a copy in a safe place; nobody can make it again.");
-                }
-                Err(error) => return Err(error),
-            }
-            Some(signer)
-        }
-        (None, Some(name)) => Some(signer_name(name)?),
-        (None, None) => None,
-    };
+    let name = arguments.new_signer.as_ref().or(arguments.signer.as_ref());
+    let signer = name.map(|name| signer_name(name)).transpose()?;
+    if let (Some(printed), Some(signer)) = (&arguments.new_signer, &signer)
+        && !has_key(surroundings, signer)
+    {
+        let made = make_key(surroundings, signer, None)?;
+        terminal.say(&format!(
+            "A signing key was made for {printed} ({signer}): {}",
+            made.fingerprint
+        ));
+        terminal.say(&format!(
+            "  private key: {}, {}",
+            made.path.display(),
+            made.permissions
+        ));
+        terminal.say(
+            "  It never enters the notebook. Keep a copy in a safe place; nobody can make it again.",
+        );
+    }
     Ok(SealRequest {
         label: arguments.label.clone(),
-        signer,
+        key: KeyChoice {
+            signer,
+            file: arguments.key.clone(),
+        },
         printed: arguments.new_signer.clone(),
     })
 }
@@ -103,12 +110,6 @@ fn told(
             "Signed by {signer}; register: {}",
             register.display()
         ));
-        if !sealed.on_roster {
-            terminal.say(&format!(
-                "{signer} is not on a roster yet: the signature shows that nothing was altered, but not whose it is. `ionfolio signer enrol` puts \
-                 the public key on the notebook's roster."
-            ));
-        }
     }
     if sealed.blocks.iter().any(|block| !block.now) {
         return verify::sealed(path, surroundings, terminal);
@@ -122,6 +123,7 @@ fn failed(error: &SealError) -> ExitStatus {
         SealError::Records(_)
         | SealError::NoSuchLabel { .. }
         | SealError::SourceNotSealed { .. }
+        | SealError::SourceChanged { .. }
         | SealError::Name { .. } => ExitStatus::WrongInput,
         SealError::Record { .. }
         | SealError::Hand(HandError::NotOnRoster { .. } | HandError::Name { .. }) => {

@@ -12,8 +12,18 @@ pub(super) fn run(
     terminal: &mut Terminal,
 ) -> ExitStatus {
     match &arguments.command {
-        SignerCommand::New { name } => {
-            let made = signer_name(name).and_then(|signer| make_key(surroundings, &signer));
+        SignerCommand::New { name, passphrase } => {
+            let typed = passphrase
+                .then(|| surroundings.keys.new_passphrase(name))
+                .flatten();
+            if *passphrase && typed.is_none() {
+                return failed(
+                    "no passphrase: the two were not the same, or nobody can be asked here; no key was made",
+                    terminal,
+                );
+            }
+            let locked = typed.as_ref().map(|text| text.as_str());
+            let made = signer_name(name).and_then(|signer| make_key(surroundings, &signer, locked));
             match made {
                 Ok(made) => {
                     terminal.out(&format!("{} {}", made.signer, made.fingerprint));

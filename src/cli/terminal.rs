@@ -63,7 +63,7 @@ impl Terminal {
     /// A line as it is, to standard error. If even that is gone, nobody is left to be told.
     #[expect(
         clippy::unused_self,
-        reason = "standard error is written to through the terminal only"
+        reason = "what is said goes through the one terminal"
     )]
     pub(super) fn say_line(&self, line: &str) {
         writeln!(io::stderr(), "{line}").unwrap_or_default();

@@ -3,42 +3,57 @@
 use crate::cli::ExitStatus;
 use crate::cli::arguments::{Format, VerifyArguments};
 use crate::cli::terminal::Terminal;
+use crate::cli::verified_json::object;
 use crate::procedure::surroundings::Surroundings;
-use crate::procedure::{Recomputed, VerifiedPage, VerifiedResult, pages, verify_page};
+use crate::procedure::{
+    AuditFinding, Examined, Recomputed, VerifiedPage, VerifiedResult, examine, is_notebook, pages,
+    verify_page,
+};
 use serde_json::{Value, json};
 use std::path::Path;
+
+/// What is told, and how.
+struct Telling<'t> {
+    format: Format,
+    terminal: &'t mut Terminal,
+    objects: Vec<Value>,
+    status: ExitStatus,
+}
 
 pub(super) fn run(
     arguments: &VerifyArguments,
     surroundings: &Surroundings<'_>,
     terminal: &mut Terminal,
 ) -> ExitStatus {
-    let mut status = ExitStatus::AllWell;
-    let mut objects = Vec::new();
+    let mut telling = Telling {
+        format: arguments.format,
+        terminal,
+        objects: Vec::new(),
+        status: ExitStatus::AllWell,
+    };
     for path in &arguments.paths {
-        let list = match pages(path) {
-            Ok(list) => list,
-            Err(error) => {
-                terminal.say(&format!("{}: {error}", path.display()));
-                status = status.and(ExitStatus::CannotReadOrWrite);
-                continue;
+        if is_notebook(path) || (path.is_dir() && arguments.keeper.is_some()) {
+            match examine(path, arguments.keeper.as_deref(), surroundings) {
+                Ok(examined) => telling.notebook(&examined),
+                Err(error) => telling.unread(path, &error),
             }
-        };
-        for page in list {
-            match verify_page(&page, surroundings) {
-                Ok(verified) => {
-                    for result in &verified.results {
-                        status = status.and(tell(&verified, result, arguments.format, terminal));
-                        objects.push(object(&verified, result));
+            continue;
+        }
+        match pages(path) {
+            Ok(list) => {
+                for page in list {
+                    match verify_page(&page, surroundings) {
+                        Ok(verified) => telling.page(&verified),
+                        Err(error) => telling.unread(&page, &error),
                     }
                 }
-                Err(error) => {
-                    terminal.say(&format!("{}: {error}", page.display()));
-                    status = status.and(ExitStatus::CannotReadOrWrite);
-                }
             }
+            Err(error) => telling.unread(path, &error),
         }
     }
+    let Telling {
+        objects, status, ..
+    } = telling;
     if arguments.format == Format::Json {
         terminal.out(&Value::Array(objects).to_string());
     }
@@ -55,7 +70,7 @@ pub(super) fn sealed(
         Ok(verified) => {
             let mut status = ExitStatus::AllWell;
             for result in verified.results.iter().filter(|result| !result.draft) {
-                tell(&verified, result, Format::Text, terminal);
+                text(&verified.name, result, terminal);
                 if result.failed() {
                     status = ExitStatus::Finding;
                 }
@@ -69,43 +84,101 @@ pub(super) fn sealed(
     }
 }
 
-fn tell(
-    page: &VerifiedPage,
-    result: &VerifiedResult,
-    format: Format,
-    terminal: &mut Terminal,
-) -> ExitStatus {
-    let quiet = format == Format::Json;
-    let at = format!("{}#{}", page.name, result.label);
-    let finding = result.failed() || !result.unlisted.is_empty() || !result.findings.is_empty();
-    if quiet {
-        return if finding {
-            ExitStatus::Finding
-        } else {
-            ExitStatus::AllWell
-        };
+impl Telling<'_> {
+    fn unread(&mut self, path: &Path, error: &dyn std::error::Error) {
+        self.terminal.say(&format!("{}: {error}", path.display()));
+        self.status = self.status.and(ExitStatus::CannotReadOrWrite);
     }
-    if result.draft {
-        terminal.out(&format!("{at}: draft, not sealed"));
-        return ExitStatus::AllWell;
+
+    fn page(&mut self, page: &VerifiedPage) {
+        for result in &page.results {
+            match self.format {
+                Format::Text => text(&page.name, result, self.terminal),
+                Format::Short => short(&page.name, result, self.terminal),
+                Format::Json => self.objects.push(object(&page.name, result)),
+            }
+            if result.asks() {
+                self.status = self.status.and(ExitStatus::Finding);
+            }
+        }
     }
-    let word = if result.failed() {
-        "DOES NOT VERIFY"
-    } else {
-        "sealed, verifies"
+
+    fn notebook(&mut self, examined: &Examined) {
+        for page in &examined.pages {
+            self.page(page);
+        }
+        for (path, error) in &examined.unread {
+            self.unread(path, error);
+        }
+        for link in &examined.links {
+            self.terminal.say(&format!(
+                "{}: a symbolic link, not followed",
+                link.display()
+            ));
+        }
+        for finding in &examined.findings {
+            match self.format {
+                Format::Text => self.terminal.out(&format!(
+                    "[{}] {}: {}; {}",
+                    finding.name(),
+                    finding.place,
+                    finding.sentence(),
+                    finding.remedy()
+                )),
+                Format::Short => self.terminal.out(&format!(
+                    "{}: {} [{}]: {}",
+                    finding.place,
+                    finding.severity(),
+                    finding.name(),
+                    finding.sentence()
+                )),
+                Format::Json => self.objects.push(json!(AuditFinding::of(finding))),
+            }
+        }
+        if examined.asks() {
+            self.status = self.status.and(ExitStatus::Finding);
+        }
+    }
+}
+
+/// One line for each result and finding.
+fn short(page: &str, result: &VerifiedResult, terminal: &mut Terminal) {
+    let at = format!("{page}#{}", result.label);
+    terminal.out(&format!("{at}: {}", verdict(result)));
+    for finding in &result.findings {
+        terminal.out(&format!(
+            "{}: {} [{}]: {}",
+            finding.place,
+            finding.severity(),
+            finding.name(),
+            finding.sentence()
+        ));
+    }
+}
+
+fn verdict(result: &VerifiedResult) -> String {
+    let word = match (result.draft, result.failed()) {
+        (true, _) => return "draft, not sealed".to_owned(),
+        (false, true) => "DOES NOT VERIFY",
+        (false, false) => "sealed, verifies",
     };
-    let mark = result
-        .mark
-        .map(|mark| format!(", {mark}"))
-        .unwrap_or_default();
+    let mark = result.mark.map(|mark| format!(", {mark}"));
+    format!("{word}{}", mark.unwrap_or_default())
+}
+
+fn text(page: &str, result: &VerifiedResult, terminal: &mut Terminal) {
+    let at = format!("{page}#{}", result.label);
+    if result.draft {
+        terminal.out(&format!("{at}: {}", verdict(result)));
+        return;
+    }
     let figure = result
-        .statement
-        .as_ref()
+        .statement()
         .map(|statement| format!(": {}", statement.result))
         .unwrap_or_default();
-    terminal.out(&format!("{at}{figure} ({word}{mark})"));
-    for act in &result.acts {
-        let act = act.act();
+    terminal.out(&format!("{at}{figure} ({})", verdict(result)));
+    for signed in result.acts() {
+        let act = signed.act();
         terminal.out(&format!(
             "  {} by {} ({}), {}",
             act.meaning,
@@ -114,22 +187,8 @@ fn tell(
             act.time.to_rfc3339()
         ));
     }
-    match &result.recomputed {
-        Recomputed::Not => {}
-        Recomputed::Same => terminal.out("  computed again: every byte of the answer is the same"),
-        Recomputed::SameFigure { cause } => terminal.out(&format!(
-            "  computed again: the same figure; the text differs, since {cause}"
-        )),
-        Recomputed::Different {
-            recorded,
-            now,
-            cause,
-        } => {
-            terminal.out(&format!(
-                "  computed again: {now}, recorded {recorded}; {cause}"
-            ));
-        }
-        Recomputed::Failed { reason } => terminal.out(&format!("  not computed again: {reason}")),
+    if let Some(line) = recomputed(&result.recomputed) {
+        terminal.out(&format!("  {line}"));
     }
     for finding in &result.findings {
         terminal.out(&format!(
@@ -143,57 +202,20 @@ fn tell(
     for signer in &result.unlisted {
         terminal.out(&format!("  [signer-not-on-roster] {signer} is on no roster: nothing was altered, but whose signature it is rests on trust"));
     }
-    if finding {
-        ExitStatus::Finding
-    } else {
-        ExitStatus::AllWell
-    }
 }
 
-fn object(page: &VerifiedPage, result: &VerifiedResult) -> Value {
-    let findings: Vec<Value> = result
-        .findings
-        .iter()
-        .map(|finding| {
-            json!({
-                "name": finding.name(),
-                "severity": finding.severity().to_string(),
-                "place": finding.place.to_string(),
-                "sentence": finding.sentence(),
-                "remedy": finding.remedy(),
-            })
-        })
-        .collect();
-    let acts: Vec<Value> = result
-        .acts
-        .iter()
-        .map(|act| {
-            let act = act.act();
-            json!({
-                "meaning": act.meaning.to_string(),
-                "signer": act.signer.to_string(),
-                "name": act.name.to_string(),
-                "time": act.time.to_rfc3339(),
-                "number": act.number,
-            })
-        })
-        .collect();
-    json!({
-        "page": page.name,
-        "label": result.label,
-        "draft": result.draft,
-        "mark": result.mark,
-        "verifies": !result.failed() && !result.draft,
-        "result": result.statement.as_ref().map(|statement| statement.result.to_string()),
-        "acts": acts,
-        "recomputed": match &result.recomputed {
-            Recomputed::Not => "not computed",
-            Recomputed::Same => "same",
-            Recomputed::SameFigure { .. } => "same figure",
-            Recomputed::Different { .. } => "different",
-            Recomputed::Failed { .. } => "failed",
-        },
-        "unlisted_signers": result.unlisted,
-        "findings": findings,
+fn recomputed(recomputed: &Recomputed) -> Option<String> {
+    Some(match recomputed {
+        Recomputed::Not => return None,
+        Recomputed::Same => "computed again: every byte of the answer is the same".to_owned(),
+        Recomputed::SameFigure { cause } => {
+            format!("computed again: the same figures; the text differs, since {cause}")
+        }
+        Recomputed::Different {
+            recorded,
+            now,
+            cause,
+        } => format!("computed again: {now}, recorded {recorded}; {cause}"),
+        Recomputed::Failed { reason } => format!("not computed again: {reason}"),
     })
 }

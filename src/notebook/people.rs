@@ -76,8 +76,7 @@ impl People {
         people.insert(signer.to_owned(), person.clone());
         let mut text = String::from("# Printed names and roles of signers.\n");
         for (signer, person) in people {
-            let name = quoted(&person.name);
-            text.extend([signer.as_str(), ":\n  name: ", &name, "\n"]);
+            text.extend([signer.as_str(), ":\n  name: ", &quoted(&person.name), "\n"]);
             if !person.roles.is_empty() {
                 let roles: Vec<String> = person.roles.iter().map(|role| quoted(role)).collect();
                 text.extend(["  roles: [", &roles.join(", "), "]\n"]);

@@ -2,6 +2,7 @@
 
 use crate::notebook::{FileError, ReplaceError, create, read_page, replace};
 use crate::page::{PAGE_LIMIT, Page, PageError, Written};
+use crate::procedure::claim::is_of_this_question;
 use crate::procedure::page_work::{BlockWork, PageWork};
 use crate::procedure::{Desk, DeskError};
 use crate::report::{self, DRAFT_NOTICE};
@@ -67,6 +68,8 @@ pub enum Standing {
     Unchanged,
     /// It is sealed and was left alone.
     Sealed,
+    /// It is sealed and was left alone, and its block was changed since.
+    SealedOtherwise,
 }
 
 /// Why a page could not be worked on at all.
@@ -139,7 +142,7 @@ pub fn compute_text(
         let (edit, standing) = drafted(&work, item)?;
         edits.extend(edit);
         blocks.push(summary(&work, item, standing));
-        if mode == Mode::Write && standing != Standing::Sealed {
+        if mode == Mode::Write && matches!(standing, Standing::Drafted | Standing::Unchanged) {
             write_plots(desk, name, item)?;
         }
     }
@@ -169,11 +172,13 @@ fn drafted(
     work: &PageWork,
     item: &BlockWork,
 ) -> Result<(Option<crate::page::Edit>, Standing), ComputeError> {
-    let sealed = work
-        .result(&item.label)
-        .is_some_and(|region| !region.is_draft());
-    if sealed {
-        return Ok((None, Standing::Sealed));
+    if let Some(region) = work.result(&item.label).filter(|region| !region.is_draft()) {
+        let standing = if is_of_this_question(&work.page, region) {
+            Standing::Sealed
+        } else {
+            Standing::SealedOtherwise
+        };
+        return Ok((None, standing));
     }
     let (Some(rendered), Some(block)) = (&item.rendered, work.block(item)) else {
         return Ok((None, Standing::None));
@@ -259,5 +264,49 @@ fn place_lines(blocks: &mut [ComputedBlock], bytes: &[u8]) {
             .iter()
             .find(|region| region.label() == block.label && region.mark().is_none())
             .map(|region| index.line_column(region.span().start()).line);
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::specimen::{ACETIC, Laboratory};
+
+    #[test]
+    fn a_second_run_changes_nothing_and_a_sealed_result_is_left_alone() {
+        let laboratory = Laboratory::with(ACETIC);
+        let run = |mode| compute_page(&laboratory.page(), mode).unwrap();
+        assert!(!run(Mode::DryRun).written && !run(Mode::Check).written);
+        assert_eq!(laboratory.read("notebook/rinse.md"), ACETIC);
+        assert!(run(Mode::Write).written);
+        let again = run(Mode::Write);
+        assert!(!again.written && again.blocks[0].standing == Standing::Unchanged);
+        laboratory.seal().unwrap();
+        let sealed = run(Mode::Write);
+        assert!(!sealed.written && sealed.blocks[0].standing == Standing::Sealed);
+        laboratory.change("notebook/rinse.md", "0.100 mol/L", "0.200 mol/L");
+        let changed = run(Mode::Write);
+        assert!(!changed.written);
+        assert_eq!(changed.blocks[0].standing, Standing::SealedOtherwise);
+    }
+
+    #[test]
+    fn a_circle_of_blocks_is_an_error_and_no_recursion() {
+        let block = |label: &str, from: &str| {
+            format!(
+                "```equilibrium\nlabel: {label}\ntask: mixing\nportions:\n  - volume: 1.00 mL\n    solution: {from}\n  - volume: 1.00 mL\n    contents: water\n```\n"
+            )
+        };
+        let laboratory = Laboratory::with(&(block("a", "b") + &block("b", "a")));
+        let computed = compute_page(&laboratory.page(), Mode::Write).unwrap();
+        assert!(
+            computed
+                .faults
+                .iter()
+                .filter(|fault| fault.is_error())
+                .count()
+                >= 2
+        );
+        assert!(!computed.written);
     }
 }

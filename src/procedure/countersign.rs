@@ -5,10 +5,12 @@ use crate::page::{Edit, Mark, PAGE_LIMIT, Page, Written};
 use crate::procedure::compute::ComputeError;
 use crate::procedure::hand::{Hand, HandError};
 use crate::procedure::records::{Records, RecordsError};
+use crate::procedure::seal::with_cause;
+use crate::procedure::signer::{KeyChoice, key_of};
 use crate::procedure::surroundings::Surroundings;
 use crate::procedure::verify::{VerifiedPage, VerifiedResult, VerifyError, verify_page};
-use crate::procedure::{Desk, SignerError, key_of};
-use crate::record::{self, Meaning, SignerName, TextLine};
+use crate::procedure::{Desk, SignerError};
+use crate::record::{self, Meaning, TextLine};
 use std::path::Path;
 
 /// What a second person says of a result.
@@ -45,8 +47,8 @@ impl Judgement {
 pub struct CountersignRequest {
     /// Only this label; every sealed result of the page otherwise.
     pub label: Option<String>,
-    /// The signer; the only key there is otherwise.
-    pub signer: Option<SignerName>,
+    /// Who signs with which key.
+    pub key: KeyChoice,
     /// What is said.
     pub judgement: Judgement,
     /// A remark.
@@ -87,7 +89,7 @@ pub enum CountersignError {
         label: String,
     },
     /// The act was not made.
-    #[error("`{label}`: {error}")]
+    #[error("`{label}`: {}", with_cause(error))]
     Act {
         /// The label.
         label: String,
@@ -132,7 +134,7 @@ pub fn countersign_page(
             label: request.label.clone(),
         });
     }
-    let signer = key_of(surroundings, request.signer.as_ref())?;
+    let signer = key_of(surroundings, &request.key, &records.roster)?;
     let mut hand = Hand::of(&desk, records, surroundings, signer, None)?;
     let mut edits = Vec::new();
     let mut labels = Vec::new();
@@ -178,12 +180,13 @@ fn act_on(
         .iter()
         .find(|region| region.label() == label && region.mark().is_none())
         .ok_or_else(not_verified)?;
-    let sealed =
-        record::countersign(proof, judgement.meaning(), &hand.signing(note)).map_err(|error| {
-            CountersignError::Act {
-                label: label.clone(),
-                error,
-            }
+    let sealed = hand
+        .sign(note, |signing| {
+            record::countersign(proof, judgement.meaning(), signing)
+        })
+        .map_err(|error| CountersignError::Act {
+            label: label.clone(),
+            error,
         })?;
     let mut acts: Vec<String> = region
         .acts()
@@ -223,6 +226,11 @@ fn act_on(
 /// [`CountersignError`]; the page is then as it was.
 pub fn amend_page(path: &Path, label: &str, reason: &str) -> Result<(), CountersignError> {
     let text = line(reason.trim())?;
+    let desk = Desk::at(path).map_err(ComputeError::from)?;
+    let _lock = match &desk.notebook {
+        Some(notebook) => Some(Lock::on(&notebook.root.join(SETTINGS_FILE))?),
+        None => None,
+    };
     let bytes = read_page(path, PAGE_LIMIT).map_err(ComputeError::from)?;
     let page = Page::read(bytes.clone()).map_err(ComputeError::from)?;
     let region = page
@@ -263,7 +271,7 @@ fn placing(label: &str, error: &dyn std::error::Error) -> ComputeError {
 const SPECIAL: &str = "\\`*_[]<>&#|!~";
 
 /// A text as Markdown shows it unchanged.
-fn escaped(text: &str) -> String {
+pub(super) fn escaped(text: &str) -> String {
     text.chars()
         .flat_map(|c| {
             SPECIAL

@@ -1,5 +1,6 @@
 //! `explain`: one rule, finding or caution, with its remedy.
 
+use crate::record::{Fault, Severity};
 use crate::text::{Rule, nearest};
 
 /// What is said of a name.
@@ -91,12 +92,45 @@ pub fn explain(name: &str) -> Result<Explanation, Vec<String>> {
             remedy,
         });
     }
+    if let Some((name, severity, remedy)) = Fault::ROWS.iter().find(|(known, ..)| *known == name) {
+        return Ok(Explanation {
+            name,
+            sentence: weight(*severity),
+            remedy,
+        });
+    }
     let names = Rule::ALL
         .iter()
         .map(|rule| rule.name())
+        .chain(Fault::NAMES.iter().copied())
         .chain(CAUTIONS.iter().map(|(name, ..)| *name));
     Err(nearest(name, names)
         .into_iter()
         .map(str::to_owned)
         .collect())
+}
+
+/// What the weight of a finding of `verify` and `audit` says.
+fn weight(severity: Severity) -> &'static str {
+    match severity {
+        Severity::Failure => "A failure found by `verify` or `audit`: the evidence does not stand.",
+        Severity::Warning => {
+            "A warning of `verify` or `audit`: the evidence stands, but something that is asked is not done, or cannot be told."
+        }
+        Severity::Note => "A note of `verify` or `audit`: worth knowing, nothing is asked.",
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn rules_findings_and_cautions_are_explained() {
+        for name in ["unclosed-fence", "answer-changed", "recalled-constant"] {
+            assert_eq!(explain(name).unwrap().name, name);
+        }
+        let near = explain("answer-change").unwrap_err();
+        assert_eq!(near[0], "answer-changed");
+    }
 }

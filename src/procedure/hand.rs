@@ -4,7 +4,7 @@ use crate::notebook::{ReplaceError, create, replace};
 use crate::procedure::Desk;
 use crate::procedure::records::Records;
 use crate::procedure::surroundings::Surroundings;
-use crate::record::{self, Entry, KeyFile, Register, SignerName, Signing, Standing, TextLine};
+use crate::record::{Entry, PublicKey, Register, Signer, SignerName, Signing, Standing, TextLine};
 use chrono::{DateTime, FixedOffset, TimeDelta};
 use std::fs;
 use std::path::PathBuf;
@@ -17,7 +17,7 @@ pub(super) struct Hand<'s> {
     /// Whether the signer is on the roster.
     pub(super) on_roster: bool,
     printed: TextLine,
-    key: KeyFile,
+    key: Box<dyn Signer>,
     offset_minutes: i32,
     addition: String,
 }
@@ -61,7 +61,7 @@ impl<'s> Hand<'s> {
         desk: &Desk,
         mut records: Records,
         surroundings: &'s Surroundings<'s>,
-        (signer, key): (SignerName, KeyFile),
+        (signer, key): (SignerName, Box<dyn Signer>),
         printed: Option<&str>,
     ) -> Result<Self, HandError> {
         let offset_minutes = desk
@@ -69,7 +69,7 @@ impl<'s> Hand<'s> {
             .as_ref()
             .map_or(0, |notebook| notebook.offset_minutes);
         let now = surroundings.clock.now(offset_minutes);
-        let public = record::Signer::public_key(&key);
+        let public = key.public_key();
         let refused = |standing| HandError::NotOnRoster {
             signer: signer.clone(),
             standing,
@@ -85,14 +85,7 @@ impl<'s> Hand<'s> {
             Standing::NotYet(_) => return Err(refused("its dates have not begun")),
             Standing::Retired(_) => return Err(refused("it is retired")),
         }
-        let text = printed.map_or_else(|| signer.to_string(), str::to_owned);
-        let known = records
-            .printed_name(&signer)
-            .filter(|name| name.as_str() != signer.as_str());
-        let printed = match known {
-            Some(name) => name,
-            None => TextLine::new(&text).map_err(|_fault| HandError::Name { printed: text })?,
-        };
+        let printed = printed_name(&records, &signer, public, printed)?;
         Ok(Self {
             on_roster: standing == Standing::Valid,
             records,
@@ -110,9 +103,13 @@ impl<'s> Hand<'s> {
         self.surroundings.clock.now(self.offset_minutes)
     }
 
-    /// Everything that a signature needs.
-    pub(super) fn signing<'a>(&'a self, note: Option<&'a TextLine>) -> Signing<'a> {
-        Signing {
+    /// Signs with everything that a signature needs.
+    pub(super) fn sign<R>(
+        &self,
+        note: Option<&TextLine>,
+        act: impl FnOnce(&Signing<'_>) -> R,
+    ) -> R {
+        act(&Signing {
             signer: &self.signer,
             name: &self.printed,
             time: self.now(),
@@ -121,8 +118,16 @@ impl<'s> Hand<'s> {
             roster: &self.records.roster,
             policy: &self.records.policy,
             people: &self.records.people,
-            key: &self.key,
-        }
+            key: self.key.as_ref(),
+        })
+    }
+
+    /// The signer's register as it is with what was taken into it.
+    pub(super) fn register(&self) -> Option<&Register> {
+        self.records
+            .registers
+            .iter()
+            .find(|register| *register.signer() == self.signer)
     }
 
     /// Takes an act into the signer's register, in memory.
@@ -162,4 +167,33 @@ impl<'s> Hand<'s> {
         }
         Ok(Some(path))
     }
+}
+
+/// The printed name: as `people.yaml` has it; else as it was said; else as the signer's last act with this key has it; else the signer's name.
+fn printed_name(
+    records: &Records,
+    signer: &SignerName,
+    key: &PublicKey,
+    said: Option<&str>,
+) -> Result<TextLine, HandError> {
+    if let Some(known) = records
+        .people
+        .iter()
+        .find(|person| person.signer == *signer)
+    {
+        return Ok(known.name.clone());
+    }
+    let with_this_key = |entry: &&Entry| {
+        let public = entry.act.signature().public_key();
+        entry.act.act().signer == *signer && public.is_ok_and(|public| public.is_same_key(key))
+    };
+    let mut entries = records.registers.iter().flat_map(Register::entries).rev();
+    let text = match (said, entries.find(with_this_key)) {
+        (Some(said), _) => said,
+        (None, Some(entry)) => return Ok(entry.act.act().name.clone()),
+        (None, None) => signer.as_str(),
+    };
+    TextLine::new(text).map_err(|_fault| HandError::Name {
+        printed: text.to_owned(),
+    })
 }

@@ -5,22 +5,39 @@
 
 pub mod surroundings;
 
+mod agent;
+mod audit;
+mod audit_contents;
+mod audit_report;
+mod audit_sections;
 mod claim;
 mod compute;
 mod countersign;
 mod desk;
 mod entry;
+mod examination;
 mod explain;
 mod hand;
+mod inspection;
+mod key_file;
 mod library;
 mod page_work;
+mod plot_names;
+mod recomputation;
 mod records;
 mod roster;
 mod seal;
+mod sealing;
 mod signer;
 mod sources;
+#[cfg(test)]
+mod specimen;
+mod trust;
 mod verify;
 
+pub use agent::AgentError;
+pub use audit::{Audit, AuditAct, AuditConstant, AuditFinding, AuditResult, AuditSigner, audit};
+pub use audit_report::{AuditFormat, audit_report};
 pub use compute::{
     ComputeError, Computed, ComputedBlock, Mode, Standing, compute_page, compute_text,
 };
@@ -29,14 +46,15 @@ pub use countersign::{
 };
 pub use desk::{Desk, DeskError};
 pub use entry::{EntryError, TEMPLATES, new_page};
+pub use examination::{ExaminationError, Examined, examine, is_notebook};
 pub use explain::{Explanation, explain};
 pub use hand::HandError;
+pub use key_file::{KeyMade, make_key};
 pub use library::{LibraryLine, list, show};
 pub use page_work::{BlockWork, PageWork};
+pub use recomputation::Recomputed;
 pub use records::RecordsError;
 pub use roster::{RosterFileError, enrol, retire, roster_lines};
 pub use seal::{SealError, SealRequest, Sealed, SealedBlock, seal_page};
-pub use signer::{KeyMade, SignerError, key_of, make_key, signer_name};
-pub use verify::{
-    PagesError, Recomputed, VerifiedPage, VerifiedResult, VerifyError, pages, verify_page,
-};
+pub use signer::{KeyChoice, SignerError, has_key, signer_name};
+pub use verify::{PagesError, VerifiedPage, VerifiedResult, VerifyError, pages, verify_page};

@@ -4,6 +4,7 @@ use crate::block::{self, Places};
 use crate::page::{Block, Page, Region};
 use crate::problem::{SolutionReference, Statement};
 use crate::procedure::Desk;
+use crate::procedure::plot_names::{generation, numbered};
 use crate::procedure::sources::Sources;
 use crate::report::{self, Rendered, Template};
 use crate::solution::{self, Unsolvable, answer::Answer};
@@ -68,79 +69,47 @@ impl PageWork {
             blocks: Vec::new(),
             page: Rc::clone(&page),
         };
-        if page.blocks().len() > MOST_BLOCKS {
-            let span = page.blocks().first().map_or(Span::at(0), Block::opening);
-            work.faults.push(Diagnostic::error(
-                Rule::TooManyBlocks,
-                span,
-                format!(
-                    "the page has {} blocks; at most {MOST_BLOCKS} are read",
-                    page.blocks().len()
-                ),
-            ));
+        if let Some(fault) = too_many(&page) {
+            work.faults.push(fault);
             return work;
         }
-        let mut labels = BTreeMap::new();
-        for index in 0..page.blocks().len() {
-            work.take(desk, &sources, index, &mut labels, solving);
+        let mut labels: BTreeMap<String, Span> = BTreeMap::new();
+        for (index, block) in page.blocks().iter().enumerate() {
+            let outline = block::outline(block.content().text());
+            let here = sources.for_block(outline.label.as_deref().unwrap_or_default());
+            let mut reading = block::read(block.content().text(), &here.context());
+            let excerpt = block.content();
+            let faults = std::mem::take(&mut reading.diagnostics);
+            work.faults
+                .extend(faults.into_iter().map(|fault| fault.in_page(excerpt)));
+            let Some((label, label_span)) = reading.label else {
+                continue;
+            };
+            let span = excerpt.in_page(label_span);
+            if let Some(first) = labels.insert(label.to_string(), span) {
+                work.faults.push(twice(&label.to_string(), span, first));
+                continue;
+            }
+            let mut item = BlockWork {
+                label: label.to_string(),
+                index,
+                statement: reading.statement,
+                answer: None,
+                rendered: None,
+                template: None,
+                references: reading.references,
+                attachments: reading.attachments,
+            };
+            if solving && let Err(failure) = item.solve(desk, name, &page) {
+                let fault = failure.diagnostic(&reading.places, label_span);
+                work.faults.push(fault.in_page(excerpt));
+            }
+            work.blocks.push(item);
         }
         work
     }
 
-    /// Takes up one block of the page.
-    fn take(
-        &mut self,
-        desk: &Desk,
-        sources: &Sources<'_>,
-        index: usize,
-        labels: &mut BTreeMap<String, Span>,
-        solving: bool,
-    ) {
-        let page = Rc::clone(&self.page);
-        let Some(excerpt) = page.blocks().get(index).map(Block::content) else {
-            return;
-        };
-        let outline = block::outline(excerpt.text());
-        let here = sources.for_block(outline.label.as_deref().unwrap_or_default());
-        let reading = block::read(excerpt.text(), &here.context());
-        let faults = reading.diagnostics.into_iter();
-        self.faults
-            .extend(faults.map(|fault| fault.in_page(excerpt)));
-        let Some((label, label_place)) = reading.label else {
-            return;
-        };
-        let span = excerpt.in_page(label_place);
-        if let Some(first) = labels.insert(label.to_string(), span) {
-            self.faults.push(twice(label.as_str(), span, first));
-            return;
-        }
-        let mut item = BlockWork {
-            label: label.to_string(),
-            index,
-            statement: reading.statement,
-            answer: None,
-            rendered: None,
-            template: None,
-            references: reading.references,
-            attachments: reading.attachments,
-        };
-        if solving && let Some(statement) = &item.statement {
-            match finished(desk, &self.name, statement) {
-                Ok((answer, rendered, template)) => {
-                    item.answer = Some(answer);
-                    item.rendered = Some(rendered);
-                    item.template = Some(template);
-                }
-                Err(failure) => {
-                    let fault = failure.diagnostic(&reading.places, label_place);
-                    self.faults.push(fault.in_page(excerpt));
-                }
-            }
-        }
-        self.blocks.push(item);
-    }
-
-    /// Solves and renders one statement at a desk; the defaults are not yet among its constants.
+    /// Solves and renders one statement at a desk.
     ///
     /// # Errors
     /// Why not, in a sentence part.
@@ -175,12 +144,38 @@ impl PageWork {
     }
 }
 
-/// Two blocks of one label.
+impl BlockWork {
+    fn solve(&mut self, desk: &Desk, name: &str, page: &Page) -> Result<(), Failure> {
+        if let Some(statement) = &self.statement {
+            let (answer, rendered, template) = rendered(desk, name, statement)?;
+            self.answer = Some(answer);
+            self.rendered = Some(numbered(rendered, generation(page, &self.label)));
+            self.template = Some(template);
+        }
+        Ok(())
+    }
+}
+
+fn too_many(page: &Page) -> Option<Diagnostic> {
+    let count = page.blocks().len();
+    let span = page.blocks().first().map_or(Span::at(0), Block::opening);
+    (count > MOST_BLOCKS).then(|| {
+        Diagnostic::error(
+            Rule::TooManyBlocks,
+            span,
+            format!("the page has {count} blocks; at most {MOST_BLOCKS} are read"),
+        )
+    })
+}
+
 fn twice(label: &str, span: Span, first: Span) -> Diagnostic {
-    let message = format!("the label `{label}` stands twice in this page");
-    Diagnostic::error(Rule::DuplicateLabel, span, message)
-        .and(first, "first here")
-        .helped("give this block a label of its own")
+    Diagnostic::error(
+        Rule::DuplicateLabel,
+        span,
+        format!("the label `{label}` stands twice in this page"),
+    )
+    .and(first, "first here")
+    .helped("give this block a label of its own")
 }
 
 /// Why a block has no result.
@@ -211,16 +206,6 @@ impl Failure {
     }
 }
 
-fn finished(
-    desk: &Desk,
-    name: &str,
-    statement: &Statement,
-) -> Result<(Answer, Rendered, Template), Failure> {
-    let (answer, mut rendered, template) = rendered(desk, name, statement)?;
-    rendered.markdown = with_defaults(&rendered.markdown, &desk.defaults.lines());
-    Ok((answer, rendered, template))
-}
-
 fn rendered(
     desk: &Desk,
     name: &str,
@@ -238,34 +223,10 @@ fn rendered(
 /// What opens the last fence of an answer.
 const CONSTANTS_FENCE: &str = "```constants\n";
 
-/// What a line of the constants says of a default that bore on the block.
-const DEFAULT_LINE: &str = "# where the block is silent: ";
-
-/// The answer with the defaults that held, as remarks in its `constants` block: with them it can be computed again when the settings have changed.
-pub(super) fn with_defaults(markdown: &str, lines: &[String]) -> String {
-    let remarks: String = lines
-        .iter()
-        .flat_map(|line| [DEFAULT_LINE, line, "\n"])
-        .collect();
-    match markdown.rfind(CONSTANTS_FENCE) {
-        Some(at) => {
-            let (before, after) = markdown.split_at(at + CONSTANTS_FENCE.len());
-            format!("{before}{remarks}{after}")
-        }
-        None => markdown.to_owned(),
-    }
-}
-
-/// The `constants` block of an answer and the defaults that it names.
-pub(super) fn embedded(answer: &str) -> Option<(String, Vec<String>)> {
+/// The content of the `constants` block of an answer.
+pub(super) fn embedded(answer: &str) -> Option<&str> {
     let at = answer.rfind(CONSTANTS_FENCE)?;
-    let inside = answer
+    answer
         .get(at + CONSTANTS_FENCE.len()..)?
-        .strip_suffix("```\n")?;
-    let defaults = inside
-        .lines()
-        .filter_map(|line| line.strip_prefix(DEFAULT_LINE))
-        .map(str::to_owned)
-        .collect();
-    Some((inside.to_owned(), defaults))
+        .strip_suffix("```\n")
 }

@@ -86,15 +86,6 @@ impl Records {
             people: people(notebook),
         })
     }
-
-    /// The printed name of a signer: from `people.yaml`, else the signer's name itself.
-    pub(super) fn printed_name(&self, signer: &SignerName) -> Option<TextLine> {
-        let known = self.people.iter().find(|person| person.signer == *signer);
-        match known {
-            Some(person) => Some(person.name.clone()),
-            None => TextLine::new(signer.as_str()).ok(),
-        }
-    }
 }
 
 fn read_if_there(path: &Path) -> Result<Option<Vec<u8>>, RecordsError> {

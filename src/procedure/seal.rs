@@ -4,16 +4,17 @@
 //! that the register holds is put into the page, and none is made anew.
 
 use crate::notebook::{Lock, LockError, SETTINGS_FILE, read_page, replace};
-use crate::page::{Edit, PAGE_LIMIT, Page, Written};
+use crate::page::{PAGE_LIMIT, Page, Region};
 use crate::procedure::compute::{ComputeError, write_plots};
 use crate::procedure::hand::{Hand, HandError};
 use crate::procedure::page_work::{BlockWork, PageWork};
 use crate::procedure::records::{Records, RecordsError};
+use crate::procedure::sealing::Sealing;
+use crate::procedure::signer::{KeyChoice, key_of};
 use crate::procedure::surroundings::Surroundings;
-use crate::procedure::{Desk, SignerError, key_of};
-use crate::record::{self, Digest, Draft, SignerName, Statement, ValueFault};
+use crate::procedure::{Desk, SignerError};
+use crate::record::{self, SignerName, ValueFault};
 use crate::text::Diagnostic;
-use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 
@@ -22,8 +23,8 @@ use std::rc::Rc;
 pub struct SealRequest {
     /// Only this label; all of the page otherwise.
     pub label: Option<String>,
-    /// The signer; the only key there is otherwise.
-    pub signer: Option<SignerName>,
+    /// Who signs with which key.
+    pub key: KeyChoice,
     /// The printed name, where `people.yaml` has none.
     pub printed: Option<String>,
 }
@@ -72,7 +73,7 @@ pub enum SealError {
     #[error(transparent)]
     Lock(#[from] LockError),
     /// The signature was not made, or may not be.
-    #[error("`{label}` was not sealed: {error}")]
+    #[error("`{label}` was not sealed: {}", with_cause(error))]
     Record {
         /// The label.
         label: String,
@@ -95,6 +96,16 @@ pub enum SealError {
     /// A block is made from a result that is not sealed.
     #[error("`{label}` is made from `{source_label}`, which is not sealed; seal that first")]
     SourceNotSealed {
+        /// The block.
+        label: String,
+        /// Its source.
+        source_label: String,
+    },
+    /// A block is made from a result that was sealed for another text of its block.
+    #[error(
+        "`{label}` is made from `{source_label}`, whose block was changed since it was sealed; amend and seal that first"
+    )]
+    SourceChanged {
         /// The block.
         label: String,
         /// Its source.
@@ -131,12 +142,8 @@ pub fn seal_page(
     let records = Records::of(desk.notebook.as_ref(), drawn)?;
     let _lock = Lock::on(&desk.root.join(SETTINGS_FILE))?;
     let bytes = read_page(path, PAGE_LIMIT).map_err(ComputeError::from)?;
-    let name = desk.relative(path);
-    let work = PageWork::solve(
-        &desk,
-        &name,
-        Page::read(bytes.clone()).map_err(ComputeError::from)?,
-    );
+    let page = Page::read(bytes.clone()).map_err(ComputeError::from)?;
+    let work = PageWork::solve(&desk, &desk.relative(path), page);
     let mut sealed = Sealed {
         page: Rc::clone(&work.page),
         faults: work.faults.clone(),
@@ -149,69 +156,39 @@ pub fn seal_page(
         return Ok(sealed);
     }
     let wanted = wanted(&work, request)?;
-    let open: Vec<&BlockWork> = wanted
-        .iter()
-        .copied()
-        .filter(|item| {
-            work.result(&item.label)
-                .is_none_or(crate::page::Region::is_draft)
-        })
-        .collect();
+    let is_open = |item: &&BlockWork| work.result(&item.label).is_none_or(Region::is_draft);
+    let open: Vec<&BlockWork> = wanted.iter().copied().filter(is_open).collect();
     if open.is_empty() {
         sealed.blocks = wanted.iter().map(|item| told(item, false)).collect();
         return Ok(sealed);
     }
-    let (signer, key) = key_of(surroundings, request.signer.as_ref())?;
-    let hand = Hand::of(
-        &desk,
-        records,
-        surroundings,
-        (signer, key),
-        request.printed.as_deref(),
-    )?;
-    let session = Session {
-        desk: &desk,
-        hand,
-        done: BTreeMap::new(),
-    };
-    let after = written(session, &work, &wanted, open, &mut sealed)?;
-    replace(path, &bytes, &after).map_err(ComputeError::from)?;
-    Ok(sealed)
-}
-
-/// Signs what is open, writes register and plots, and gives back the page's bytes with the sealed results.
-fn written(
-    mut session: Session<'_>,
-    work: &PageWork,
-    wanted: &[&BlockWork],
-    open: Vec<&BlockWork>,
-    sealed: &mut Sealed,
-) -> Result<Vec<u8>, SealError> {
+    let signer = key_of(surroundings, &request.key, &records.roster)?;
+    let printed = request.printed.as_deref();
+    let hand = Hand::of(&desk, records, surroundings, signer, printed)?;
+    let mut sealing = Sealing::by(&desk, hand);
     let mut edits = Vec::new();
-    for item in in_order(work, open) {
-        edits.push(session.seal(work, item)?);
+    for item in in_order(&work, open) {
+        edits.push(sealing.seal(&work, item)?);
     }
+    sealed.signer = Some(sealing.hand.signer.clone());
+    sealed.on_roster = sealing.hand.on_roster;
+    sealed.register = sealing.hand.write_register()?;
     for item in wanted {
-        sealed
-            .blocks
-            .push(told(item, session.done.contains_key(&item.label)));
+        let now = sealing.done.contains_key(&item.label);
+        sealed.blocks.push(told(item, now));
+        if now {
+            write_plots(&desk, &work.name, item)?;
+        }
     }
-    sealed.signer = Some(session.hand.signer.clone());
-    sealed.on_roster = session.hand.on_roster;
-    sealed.register = session.hand.write_register()?;
-    for item in wanted
-        .iter()
-        .filter(|item| session.done.contains_key(&item.label))
-    {
-        write_plots(session.desk, &work.name, item)?;
-    }
-    Ok(work
+    let after = work
         .page
         .with(edits)
         .map_err(|error| ComputeError::Placing {
             label: work.name.clone(),
             reason: error.to_string(),
-        })?)
+        })?;
+    replace(path, &bytes, &after).map_err(ComputeError::from)?;
+    Ok(sealed)
 }
 
 fn told(item: &BlockWork, now: bool) -> SealedBlock {
@@ -267,84 +244,95 @@ fn in_order<'w>(work: &PageWork, open: Vec<&'w BlockWork>) -> Vec<&'w BlockWork>
     ordered
 }
 
-/// One run of sealing: the register grows, and what was sealed may be used by what follows.
-pub(super) struct Session<'d> {
-    pub(super) desk: &'d Desk,
-    pub(super) hand: Hand<'d>,
-    /// Digest of the record of each label sealed in this run.
-    pub(super) done: BTreeMap<String, Digest>,
+/// What the record says, with what the holder of the key said where it was the one that failed.
+pub(super) fn with_cause(error: &record::SealError) -> String {
+    let holder = match error {
+        record::SealError::Signing(signing) => std::error::Error::source(signing),
+        _ => None,
+    };
+    holder.map_or_else(|| error.to_string(), |cause| format!("{error}: {cause}"))
 }
 
-impl Session<'_> {
-    /// The edit that puts a sealed result into the page.
-    fn seal(&mut self, work: &PageWork, item: &BlockWork) -> Result<Edit, SealError> {
-        let block = work.block(item);
-        let (Some(rendered), Some(block)) = (&item.rendered, block) else {
-            return Err(SealError::Missing(format!(
-                "`{}` has no result",
-                item.label
-            )));
-        };
-        let question = block.content().text();
-        let (record, act, digest) = if let Some(found) = self.interrupted(work, item, question) {
-            found
-        } else {
-            let statement = self.statement(work, item, question)?;
-            let draft = Draft {
-                statement: &statement,
-                question: question.as_bytes(),
-                answer: rendered.markdown.as_bytes(),
-            };
-            let signing = self.hand.signing(None);
-            let sealed = record::seal(&draft, &signing).map_err(|error| SealError::Record {
-                label: item.label.clone(),
-                error,
-            })?;
-            self.hand.take(sealed.entry, &sealed.register_addition);
-            (sealed.record, sealed.act.print(), sealed.digest)
-        };
-        self.done.insert(item.label.clone(), digest);
-        let placing = |reason: String| ComputeError::Placing {
-            label: item.label.clone(),
-            reason,
-        };
-        let written = Written::sealed(&item.label, &rendered.markdown, &record, vec![act])
-            .map_err(|error| placing(error.to_string()))?;
-        Ok(work
-            .page
-            .placing(block, &written)
-            .map_err(|error| placing(error.to_string()))?)
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::Recomputed;
+    use crate::procedure::specimen::{ACETIC, Laboratory, MADE_FROM};
+
+    #[test]
+    fn what_is_sealed_verifies_and_stays_as_it_is() {
+        let laboratory = Laboratory::with(ACETIC);
+        let sealed = laboratory.seal().unwrap();
+        assert!(sealed.blocks[0].now && !sealed.on_roster);
+        let page = laboratory.read("notebook/rinse.md");
+        assert!(page.ends_with("\r\n\r\nEnd  \r\n"));
+        let verified = laboratory.verify();
+        assert_eq!(verified.results[0].recomputed, Recomputed::Same);
+        assert_eq!(verified.results[0].findings, []);
+        assert!(!laboratory.seal().unwrap().blocks[0].now);
+        assert_eq!(laboratory.read("notebook/rinse.md"), page);
     }
 
-    /// The act of a run that was stopped before the page was written, if its question and answer are still the same.
-    fn interrupted(
-        &self,
-        work: &PageWork,
-        item: &BlockWork,
-        question: &str,
-    ) -> Option<(String, String, Digest)> {
-        let rendered = item.rendered.as_ref()?;
-        let own = self
-            .hand
-            .records
-            .registers
+    #[test]
+    fn a_run_stopped_before_the_page_was_written_is_named_and_completed() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        let sealed = laboratory.read("notebook/rinse.md");
+        let register = laboratory.read("notebook/registers/bench.analyst.md");
+        laboratory.write("notebook/rinse.md", ACETIC);
+        let examined = crate::procedure::examine(
+            &laboratory.path("notebook"),
+            None,
+            &laboratory.surroundings(),
+        );
+        let findings = examined.unwrap().findings;
+        assert_eq!(findings[0].name(), "act-missing-from-page");
+        laboratory.seal().unwrap();
+        assert_eq!(laboratory.read("notebook/rinse.md"), sealed);
+        assert_eq!(
+            laboratory.read("notebook/registers/bench.analyst.md"),
+            register
+        );
+    }
+
+    #[test]
+    fn sources_are_sealed_before_what_is_made_from_them() {
+        let laboratory = Laboratory::with(MADE_FROM);
+        laboratory.seal().unwrap();
+        let verified = laboratory.verify();
+        let numbers: Vec<u64> = verified
+            .results
             .iter()
-            .find(|register| *register.signer() == self.hand.signer)?;
-        let entry = own.entries().iter().rev().find(|entry| {
-            Statement::parse(entry.record.as_bytes()).is_ok_and(|statement| {
-                entry.act.act().meaning == record::Meaning::Performed
-                    && statement.page.as_str() == work.name
-                    && statement.label.as_str() == item.label
-                    && statement.question == Digest::of_lines(question.as_bytes())
-                    && statement.answer == Digest::of_lines(rendered.markdown.as_bytes())
-            })
-        })?;
-        let digest = Digest::of_lines(entry.record.as_bytes());
-        let in_page = work.page.results().iter().any(|region| {
-            region
-                .record()
-                .is_some_and(|fence| Digest::of_lines(fence.content.text().as_bytes()) == digest)
-        });
-        (!in_page).then(|| (entry.record.clone(), entry.act.print(), digest))
+            .map(|result| result.acts()[0].act().number)
+            .collect();
+        assert_eq!(numbers, [2, 1]);
+        let uses = &verified.results[0].statement().unwrap().uses;
+        assert_eq!(uses[0].name.to_string(), "rinse.md#stock");
+        assert_eq!(verified.results[0].recomputed, Recomputed::Same);
+    }
+
+    #[test]
+    fn nothing_is_made_from_a_source_that_is_not_sealed_as_it_stands() {
+        let laboratory = Laboratory::with(MADE_FROM);
+        let only = |label: &str| {
+            let request = SealRequest {
+                label: Some(label.to_owned()),
+                key: KeyChoice::default(),
+                printed: None,
+            };
+            seal_page(&laboratory.page(), &request, &laboratory.surroundings())
+        };
+        let draft = only("diluted");
+        assert!(
+            matches!(draft, Err(SealError::SourceNotSealed { .. })),
+            "{draft:?}"
+        );
+        only("stock").unwrap();
+        laboratory.change("notebook/rinse.md", "0.100 mol/L", "0.200 mol/L");
+        let changed = only("diluted");
+        assert!(
+            matches!(changed, Err(SealError::SourceChanged { .. })),
+            "{changed:?}"
+        );
     }
 }

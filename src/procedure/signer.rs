@@ -1,14 +1,12 @@
-//! Keys of signers: where they are, how they are made, how they are opened.
+//! Keys of signers: whose is which, and where it is found.
 
+use crate::procedure::agent::{AgentError, AgentKey};
+use crate::procedure::key_file::{LARGEST, at, open};
 use crate::procedure::surroundings::Surroundings;
-use crate::record::{KeyError, KeyFile, SignerName};
-use std::fs::{self, OpenOptions};
-use std::io::{self, Write};
+use crate::record::{KeyError, PublicKey, Roster, Signer, SignerName};
+use std::fs;
+use std::io;
 use std::path::{Path, PathBuf};
-use zeroize::Zeroizing;
-
-/// Largest key file in bytes.
-const LARGEST: u64 = 64 * 1024;
 
 /// Why there is no key.
 #[derive(Debug, thiserror::Error)]
@@ -69,22 +67,26 @@ pub enum SignerError {
         /// Why.
         error: io::Error,
     },
+    /// A key outside the program's own folder, and nobody said whose it is.
+    #[error("{path}: say whose key it is with `--signer NAME`", path = .path.display())]
+    Whose {
+        /// The key.
+        path: PathBuf,
+    },
+    /// The private half of a public key is nowhere.
+    #[error(
+        "{path} is a public key; its private half is neither in a file beside it nor in an agent", path = .path.display()
+    )]
+    PublicOnly {
+        /// The public key.
+        path: PathBuf,
+    },
+    /// The agent did not help.
+    #[error("{0}")]
+    Agent(#[from] AgentError),
     /// There are no random bytes.
     #[error("no random bytes from the system: {0}")]
     Entropy(String),
-}
-
-/// A key that was made.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub struct KeyMade {
-    /// Whose it is.
-    pub signer: SignerName,
-    /// The private key's file.
-    pub path: PathBuf,
-    /// Its permissions, in words.
-    pub permissions: &'static str,
-    /// Fingerprint of the public key.
-    pub fingerprint: String,
 }
 
 /// The signer's name that a printed name makes: `Bench Analyst` is `bench.analyst`.
@@ -111,65 +113,137 @@ pub fn signer_name(printed: &str) -> Result<SignerName, SignerError> {
             other => other,
         })
         .collect();
-    SignerName::new(&plain).map_err(|_fault| SignerError::Name {
+    let unusable = || SignerError::Name {
         name: printed.to_owned(),
-    })
-}
-
-/// Makes a key for a signer, private to the user.
-///
-/// # Errors
-/// [`SignerError`]; a key that is there already is never overwritten.
-pub fn make_key(
-    surroundings: &Surroundings<'_>,
-    signer: &SignerName,
-) -> Result<KeyMade, SignerError> {
-    let folder = surroundings.keys.folder().ok_or(SignerError::NoFolder)?;
-    private_folder(&folder)?;
-    let path = folder.join(signer.as_str());
-    if path.exists() {
-        return Err(SignerError::Exists {
-            signer: signer.clone(),
-            path,
-        });
+    };
+    // A key's public half stands beside it under the name with `.pub`.
+    if Path::new(&plain)
+        .extension()
+        .is_some_and(|end| end == "pub")
+    {
+        return Err(unusable());
     }
-    let mut seed = Zeroizing::new([0_u8; 32]);
-    surroundings
-        .entropy
-        .fill(seed.as_mut())
-        .map_err(SignerError::Entropy)?;
-    let key = KeyFile::generate(&seed, signer.as_str()).map_err(|error| at(&path, error))?;
-    let text = key.print(None).map_err(|error| at(&path, error))?;
-    write_private(&path, text.as_bytes())?;
-    let public = key_public_line(&key);
-    write_public(&path.with_extension("pub"), public.as_bytes())?;
-    Ok(KeyMade {
-        signer: signer.clone(),
-        fingerprint: crate::record::Signer::public_key(&key).fingerprint(),
-        path,
-        permissions: "read and write for you only (0600)",
-    })
+    SignerName::new(&plain).map_err(|_fault| unusable())
 }
 
-/// Opens the key of a signer, or the only key there is.
+/// Which key is to sign.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct KeyChoice {
+    /// The signer; the only key of the program's own folder otherwise.
+    pub signer: Option<SignerName>,
+    /// A key elsewhere: a private key's file, or a `.pub` file whose private half an agent holds.
+    pub file: Option<PathBuf>,
+}
+
+/// A signer with the key that signs.
+pub(super) type SignerKey = (SignerName, Box<dyn Signer>);
+
+/// Opens a signer's key: the file that was named; else the key in the program's own folder; else a key that the roster gives the signer,
+/// from the user's SSH folder or an agent.
 ///
 /// # Errors
 /// [`SignerError`]; a key that others may read is refused.
-pub fn key_of(
+pub(super) fn key_of(
     surroundings: &Surroundings<'_>,
-    signer: Option<&SignerName>,
-) -> Result<(SignerName, KeyFile), SignerError> {
+    choice: &KeyChoice,
+    roster: &Roster,
+) -> Result<SignerKey, SignerError> {
+    if let Some(path) = &choice.file {
+        let signer = choice
+            .signer
+            .clone()
+            .ok_or_else(|| SignerError::Whose { path: path.clone() })?;
+        return Ok((signer, named_key(surroundings, path)?));
+    }
     let folder = surroundings.keys.folder().ok_or(SignerError::NoFolder)?;
-    let signer = match signer {
+    let signer = match &choice.signer {
         Some(signer) => signer.clone(),
         None => only_key(&folder)?,
     };
     let path = folder.join(signer.as_str());
-    if !path.is_file() {
-        return Err(SignerError::NoKey { signer, folder });
+    if path.is_file() {
+        let key = open(surroundings, &path)?;
+        return Ok((signer, Box::new(key)));
     }
-    let key = open(surroundings, &path)?;
-    Ok((signer, key))
+    let enrolled = roster
+        .enrolments()
+        .filter(|entry| entry.signer == signer && entry.valid_before.is_none());
+    for entry in enrolled {
+        if let Some(key) = held(surroundings, &entry.key)? {
+            return Ok((signer, key));
+        }
+    }
+    Err(SignerError::NoKey { signer, folder })
+}
+
+/// Whether the program's own folder holds a key of a signer.
+pub fn has_key(surroundings: &Surroundings<'_>, signer: &SignerName) -> bool {
+    let folder = surroundings.keys.folder();
+    folder.is_some_and(|folder| folder.join(signer.as_str()).is_file())
+}
+
+fn named_key(surroundings: &Surroundings<'_>, path: &Path) -> Result<Box<dyn Signer>, SignerError> {
+    if path.extension().is_none_or(|extension| extension != "pub") {
+        return Ok(Box::new(open(surroundings, path)?));
+    }
+    let unreadable = || at(path, KeyError::Unreadable);
+    let public = public_key(path).ok_or_else(unreadable)?;
+    let private = path.with_extension("");
+    match in_agent(surroundings, &public) {
+        Ok(Some(key)) => Ok(key),
+        _ if private.is_file() => Ok(Box::new(open(surroundings, &private)?)),
+        Ok(None) => Err(SignerError::PublicOnly {
+            path: path.to_owned(),
+        }),
+        Err(error) => Err(error),
+    }
+}
+
+/// A key by its public half: in an agent, or in the user's SSH folder.
+fn held(
+    surroundings: &Surroundings<'_>,
+    public: &PublicKey,
+) -> Result<Option<Box<dyn Signer>>, SignerError> {
+    // An agent that cannot be asked is told of only where no file has the key either.
+    let asked = match in_agent(surroundings, public) {
+        Ok(Some(key)) => return Ok(Some(key)),
+        other => other,
+    };
+    let Some(entries) = surroundings
+        .keys
+        .ssh_folder()
+        .and_then(|folder| fs::read_dir(folder).ok())
+    else {
+        return asked;
+    };
+    let private = entries
+        .flatten()
+        .map(|entry| entry.path())
+        .filter(|path| path.extension().is_some_and(|extension| extension == "pub"))
+        .find(|path| public_key(path).is_some_and(|other| other.is_same_key(public)))
+        .map(|path| path.with_extension(""))
+        .filter(|path| path.is_file());
+    match private {
+        Some(path) => Ok(Some(Box::new(open(surroundings, &path)?))),
+        None => asked,
+    }
+}
+
+fn in_agent(
+    surroundings: &Surroundings<'_>,
+    public: &PublicKey,
+) -> Result<Option<Box<dyn Signer>>, SignerError> {
+    let Some(socket) = surroundings.keys.agent() else {
+        return Ok(None);
+    };
+    let key = AgentKey::held(&socket, public)?;
+    Ok(key.map(|key| -> Box<dyn Signer> { Box::new(key) }))
+}
+
+fn public_key(path: &Path) -> Option<PublicKey> {
+    let small = fs::metadata(path).is_ok_and(|metadata| metadata.len() <= LARGEST);
+    let text = small.then(|| fs::read_to_string(path).ok()).flatten()?;
+    PublicKey::parse(text.trim_end()).ok()
 }
 
 fn only_key(folder: &Path) -> Result<SignerName, SignerError> {
@@ -199,93 +273,4 @@ fn only_key(folder: &Path) -> Result<SignerName, SignerError> {
             })
         }
     }
-}
-
-fn open(surroundings: &Surroundings<'_>, path: &Path) -> Result<KeyFile, SignerError> {
-    let system = |error| SignerError::System {
-        path: path.to_owned(),
-        error,
-    };
-    let metadata = fs::metadata(path).map_err(system)?;
-    if metadata.len() > LARGEST {
-        return Err(at(path, KeyError::Unreadable));
-    }
-    if exposed(&metadata) {
-        return Err(SignerError::Exposed {
-            path: path.to_owned(),
-        });
-    }
-    let bytes = Zeroizing::new(fs::read(path).map_err(system)?);
-    let locked = KeyFile::is_locked(&bytes).map_err(|error| at(path, error))?;
-    let passphrase = if locked {
-        surroundings.keys.passphrase(&path.display().to_string())
-    } else {
-        None
-    };
-    KeyFile::open(&bytes, passphrase.as_ref().map(|text| text.as_str()))
-        .map_err(|error| at(path, error))
-}
-
-fn at(path: &Path, error: KeyError) -> SignerError {
-    SignerError::Key {
-        path: path.to_owned(),
-        error,
-    }
-}
-
-fn key_public_line(key: &KeyFile) -> String {
-    format!("{}\n", crate::record::Signer::public_key(key).print())
-}
-
-#[cfg(unix)]
-fn exposed(metadata: &fs::Metadata) -> bool {
-    use std::os::unix::fs::PermissionsExt;
-    metadata.permissions().mode() & 0o077 != 0
-}
-
-#[cfg(not(unix))]
-fn exposed(_metadata: &fs::Metadata) -> bool {
-    false
-}
-
-fn private_folder(folder: &Path) -> Result<(), SignerError> {
-    let mut builder = fs::DirBuilder::new();
-    builder.recursive(true);
-    #[cfg(unix)]
-    {
-        use std::os::unix::fs::DirBuilderExt;
-        builder.mode(0o700);
-    }
-    builder.create(folder).map_err(|error| SignerError::System {
-        path: folder.to_owned(),
-        error,
-    })
-}
-
-/// Created private from the first byte on.
-fn write_private(path: &Path, bytes: &[u8]) -> Result<(), SignerError> {
-    let mut options = OpenOptions::new();
-    options.write(true).create_new(true);
-    #[cfg(unix)]
-    {
-        use std::os::unix::fs::OpenOptionsExt;
-        options.mode(0o600);
-    }
-    write_with(&options, path, bytes)
-}
-
-fn write_public(path: &Path, bytes: &[u8]) -> Result<(), SignerError> {
-    let mut options = OpenOptions::new();
-    options.write(true).create(true).truncate(true);
-    write_with(&options, path, bytes)
-}
-
-fn write_with(options: &OpenOptions, path: &Path, bytes: &[u8]) -> Result<(), SignerError> {
-    let system = |error| SignerError::System {
-        path: path.to_owned(),
-        error,
-    };
-    let mut file = options.open(path).map_err(system)?;
-    file.write_all(bytes).map_err(system)?;
-    file.sync_all().map_err(system)
 }

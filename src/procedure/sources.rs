@@ -5,6 +5,8 @@ use crate::notebook::{attachment, read_page};
 use crate::page::{PAGE_LIMIT, Page};
 use crate::problem::{Composition, Problem, SolutionReference, Statement};
 use crate::procedure::Desk;
+use crate::procedure::recomputation::sealed_desk;
+use crate::record;
 use crate::solution;
 use std::cell::RefCell;
 use std::collections::BTreeMap;
@@ -26,6 +28,8 @@ pub(super) struct Sources<'d> {
     page: Rc<Page>,
     stack: Vec<Place>,
     shared: Rc<Shared>,
+    /// Whether other blocks are taken with the constants and defaults of their sealed results.
+    as_sealed: bool,
 }
 
 /// What all look-ups of one run share.
@@ -49,6 +53,15 @@ impl<'d> Sources<'d> {
             page,
             stack: Vec::new(),
             shared: Rc::new(shared),
+            as_sealed: false,
+        }
+    }
+
+    /// Look-ups that take other blocks as they were sealed, for computing again when the library or the settings have changed.
+    pub(super) fn as_sealed(desk: &'d Desk, page_name: &str, page: Rc<Page>) -> Self {
+        Self {
+            as_sealed: true,
+            ..Self::of(desk, page_name, page)
         }
     }
 
@@ -62,6 +75,7 @@ impl<'d> Sources<'d> {
             page: Rc::clone(&self.page),
             stack,
             shared: Rc::clone(&self.shared),
+            as_sealed: self.as_sealed,
         }
     }
 
@@ -101,15 +115,36 @@ impl<'d> Sources<'d> {
                     page: Rc::clone(&page),
                     stack: self.stack.clone(),
                     shared: Rc::clone(&self.shared),
+                    as_sealed: self.as_sealed,
                 }
                 .for_block(&place.1);
-                let reading = block::read(content, &there.context());
+                let sealed = self
+                    .as_sealed
+                    .then(|| self.sealed(&page, &place.1))
+                    .flatten();
+                let mut context = there.context();
+                if let Some(desk) = &sealed {
+                    context.catalogue = &desk.catalogue;
+                    context.defaults = &desk.defaults;
+                }
+                let reading = block::read(content, &context);
                 let statement = reading.statement.ok_or(SolutionError::Faulty)?;
                 return liquid(&statement).map(Arc::new);
             }
             labels.extend(outline.label);
         }
         Err(SolutionError::Unknown { labels })
+    }
+
+    /// The desk of a label's sealed result, if it has one.
+    fn sealed(&self, page: &Page, label: &str) -> Option<Desk> {
+        let region = page
+            .results()
+            .iter()
+            .find(|region| region.label() == label && region.mark().is_none())?;
+        let record = region.record()?;
+        let statement = record::Statement::parse(record.content.text().as_bytes()).ok()?;
+        sealed_desk(self.desk, region.answer().text(), &statement).ok()
     }
 
     /// The context in which the page's blocks are read.

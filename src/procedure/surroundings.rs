@@ -26,6 +26,12 @@ pub trait Keys: std::fmt::Debug {
     fn folder(&self) -> Option<PathBuf>;
     /// Asks for the passphrase of a key; `None` where nobody can be asked.
     fn passphrase(&self, key: &str) -> Option<Zeroizing<String>>;
+    /// Asks twice for the passphrase of a new key; `None` where nobody can be asked or the two differ.
+    fn new_passphrase(&self, key: &str) -> Option<Zeroizing<String>>;
+    /// The folder of the user's SSH keys.
+    fn ssh_folder(&self) -> Option<PathBuf>;
+    /// The socket of the user's SSH agent.
+    fn agent(&self) -> Option<PathBuf>;
 }
 
 /// Which program this is.
@@ -72,27 +78,50 @@ impl Entropy for System {
 }
 
 impl Keys for System {
-    #[expect(
-        clippy::disallowed_methods,
-        reason = "this is the door to the user's folders"
-    )]
     fn folder(&self) -> Option<PathBuf> {
-        let set = |name: &str| std::env::var(name).ok().filter(|value| !value.is_empty());
         let configuration = set("XDG_CONFIG_HOME")
             .or_else(|| set("APPDATA"))
-            .map(PathBuf::from)
-            .or_else(|| set("HOME").map(|home| PathBuf::from(home).join(".config")))?;
+            .or_else(|| set("HOME").map(|home| home.join(".config")))?;
         Some(configuration.join("ionfolio").join("keys"))
     }
 
     fn passphrase(&self, key: &str) -> Option<Zeroizing<String>> {
-        if !std::io::IsTerminal::is_terminal(&std::io::stdin()) {
-            return None;
-        }
-        rpassword::prompt_password(format!("Passphrase of {key}: "))
-            .ok()
-            .map(Zeroizing::new)
+        asked(&format!("Passphrase of {key}: "))
     }
+
+    fn new_passphrase(&self, key: &str) -> Option<Zeroizing<String>> {
+        let first = asked(&format!("New passphrase of {key}: "))?;
+        let second = asked("The same again: ")?;
+        (first == second && !first.is_empty()).then_some(first)
+    }
+
+    fn ssh_folder(&self) -> Option<PathBuf> {
+        set("HOME")
+            .or_else(|| set("USERPROFILE"))
+            .map(|home| home.join(".ssh"))
+    }
+
+    fn agent(&self) -> Option<PathBuf> {
+        set("SSH_AUTH_SOCK")
+    }
+}
+
+#[expect(
+    clippy::disallowed_methods,
+    reason = "this is the door to the user's folders"
+)]
+fn set(name: &str) -> Option<PathBuf> {
+    std::env::var(name)
+        .ok()
+        .filter(|value| !value.is_empty())
+        .map(PathBuf::from)
+}
+
+fn asked(prompt: &str) -> Option<Zeroizing<String>> {
+    if !std::io::IsTerminal::is_terminal(&std::io::stdin()) {
+        return None;
+    }
+    rpassword::prompt_password(prompt).ok().map(Zeroizing::new)
 }
 
 impl Program {

@@ -26,6 +26,10 @@ macro_rules! rows {
 
             /// Every name, in the order of the list.
             pub const NAMES: &'static [&'static str] = &[$($name,)*];
+
+            /// Name, weight and remedy of each, in the order of the list.
+            pub const ROWS: &'static [(&'static str, Severity, &'static str)] =
+                &[$(($name, Severity::$severity, $remedy),)*];
         }
     };
 }

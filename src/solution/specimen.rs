@@ -86,7 +86,6 @@ pub(super) fn statement(problem: Problem, celsius: &str) -> Statement {
             air: stated(Air::Closed),
             uncertainty: stated(UncertaintyMode::Budget),
             accepted: BTreeSet::new(),
-            carbonate: None,
             pkw: None,
             carbonate: Catalogue::embedded()
                 .unwrap()

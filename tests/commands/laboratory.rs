@@ -60,7 +60,7 @@ impl Laboratory {
             }
             for page in fs::read_dir(folder.path()).unwrap() {
                 let page = page.unwrap().file_name().into_string().unwrap();
-                if page.ends_with(".md") {
+                if Path::new(&page).extension().is_some_and(|extension| extension == "md") {
                     pages.push(format!("{name}/{page}"));
                 }
             }
