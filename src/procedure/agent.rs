@@ -149,6 +149,7 @@ fn take<'a>(rest: &mut &'a [u8]) -> Result<&'a [u8], AgentError> {
 }
 
 #[cfg(all(test, unix))]
+#[expect(clippy::unwrap_used, reason = "a test may stop where it cannot go on")]
 mod tests {
     use super::*;
     use std::os::unix::net::UnixListener;

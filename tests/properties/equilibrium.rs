@@ -1,9 +1,4 @@
 //! Laws of the solver over seeded random problems.
-#![expect(
-    clippy::unwrap_used,
-    clippy::disallowed_methods,
-    reason = "a test may stop where it cannot go on, and its draws need no fixed bytes"
-)]
 
 use crate::arbitrary_solution::Draw;
 use ionfolio::equilibrium::{ActivityModel, Solver, Species, System, Total, Totals, Water};

@@ -12,6 +12,7 @@
     clippy::indexing_slicing,
     clippy::disallowed_methods,
     clippy::print_stderr,
+    clippy::too_many_lines,
     reason = "a test may stop where it cannot go on; the number of its problems comes from outside, and it tells the largest error found"
 )]
 
@@ -326,8 +327,8 @@ impl Reference {
         match self.model {
             ActivityModel::Ideal => return (big(0.0), big(0.0)),
             ActivityModel::Davies => {
-                value = value - big(3.0) / big(10.0) * i;
-                slope = slope - big(3.0) / big(10.0);
+                value -= big(3.0) / big(10.0) * i;
+                slope -= big(3.0) / big(10.0);
             }
             ActivityModel::Guentelberg => {}
             other => unreachable!("{other:?} is not drawn"),
@@ -374,10 +375,13 @@ impl Reference {
                 }
                 let weighted = big(weight) * &molality;
                 left[equation] += &weighted;
-                for (unknown, exponent) in row.exponents.iter().enumerate() {
-                    if *exponent != 0 {
-                        matrix[equation][unknown] += &weighted * big(f64::from(*exponent));
-                    }
+                let present = row
+                    .exponents
+                    .iter()
+                    .enumerate()
+                    .filter(|(_, exponent)| **exponent != 0);
+                for (unknown, exponent) in present {
+                    matrix[equation][unknown] += &weighted * big(f64::from(*exponent));
                 }
                 matrix[equation][order] += big(weight) * &by_ionic;
             };
