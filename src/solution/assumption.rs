@@ -155,7 +155,7 @@ fn model(bench: &Bench<'_>, surroundings: &Surroundings, cost: &Cost<'_>) -> Ass
     let (name, ph) = surroundings.second_model;
     cost(
         format!(
-            "Activity coefficients follow the model `{}` ({}).",
+            "Activity coefficients follow the model {} ({}).",
             bench.chosen.choice.name(),
             origin(bench.statement.conditions.activity.origin)
         ),

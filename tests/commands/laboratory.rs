@@ -116,7 +116,11 @@ fn copy(from: &Path, to: &Path) {
         }
         if entry.path().is_dir() {
             copy(&entry.path(), &target);
-        } else if entry.path().extension().is_some_and(|extension| extension == "md") {
+        } else if entry
+            .path()
+            .extension()
+            .is_some_and(|extension| extension == "md")
+        {
             let page = ionfolio::page::Page::read(fs::read(entry.path()).unwrap()).unwrap();
             fs::write(target, page.without_results()).unwrap();
         } else {
