@@ -68,7 +68,7 @@ pub struct ModelFacts {
 pub struct State {
     /// pH = -lg a(H+).
     pub ph: f64,
-    /// p[H] = -lg (m(H+) / (mol/kg)).
+    /// p\[H\] = -lg (m(H+) / (mol/kg)).
     pub p_hydrogen: f64,
     /// Ionic strength in mol/kg.
     pub ionic_strength: f64,
