@@ -259,6 +259,15 @@ pub(super) struct EntryArguments {
     pub(super) from: Option<String>,
 }
 
+/// What enrolling makes of earlier acts.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(super) enum Earlier {
+    /// They count: the key signs from its first act on
+    Count,
+    /// They do not: the key signs from now on
+    Refuse,
+}
+
 #[derive(Debug, Args)]
 pub(super) struct SignerArguments {
     #[command(subcommand)]
@@ -287,6 +296,9 @@ pub(super) enum SignerCommand {
         signer: String,
         /// The public key's file
         key: PathBuf,
+        /// Whether acts count that were signed with this key before
+        #[arg(long, value_enum)]
+        earlier_acts: Option<Earlier>,
         /// A page or folder of the notebook
         #[arg(long, default_value = ".")]
         notebook: PathBuf,

@@ -148,7 +148,8 @@ fn take<'a>(rest: &mut &'a [u8]) -> Result<&'a [u8], AgentError> {
     Ok(bytes)
 }
 
-#[cfg(all(test, unix))]
+#[cfg(test)]
+#[cfg(unix)]
 mod tests {
     use super::*;
     use std::os::unix::net::UnixListener;

@@ -54,7 +54,7 @@ pub use library::{LibraryLine, list, show};
 pub use page_work::{BlockWork, PageWork};
 pub use recomputation::Recomputed;
 pub use records::RecordsError;
-pub use roster::{RosterFileError, enrol, retire, roster_lines};
+pub use roster::{EarlierActs, RosterFileError, enrol, retire, roster_lines};
 pub use seal::{SealError, SealRequest, Sealed, SealedBlock, seal_page};
 pub use signer::{KeyChoice, SignerError, has_key, signer_name};
 pub use verify::{PagesError, VerifiedPage, VerifiedResult, VerifyError, pages, verify_page};
