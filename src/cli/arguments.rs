@@ -303,6 +303,18 @@ pub(super) enum SignerCommand {
         #[arg(long, default_value = ".")]
         notebook: PathBuf,
     },
+    /// Sign roster and people as they are, as their keeper; verifiers then give the fingerprint with `--keeper`
+    SignRoster {
+        /// The keeper's signer name
+        #[arg(long, value_name = "NAME", group = "whose")]
+        signer: Option<String>,
+        /// Sign with this key: a private key's file, or a `.pub` file whose private half an SSH agent holds
+        #[arg(long, value_name = "FILE", requires = "whose")]
+        key: Option<PathBuf>,
+        /// A page or folder of the notebook
+        #[arg(long, default_value = ".")]
+        notebook: PathBuf,
+    },
     /// Retire a signer's keys from now on; what they signed before stays good
     Retire {
         /// The signer's name

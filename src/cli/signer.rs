@@ -4,7 +4,10 @@ use crate::cli::ExitStatus;
 use crate::cli::arguments::{Earlier, SignerArguments, SignerCommand};
 use crate::cli::terminal::Terminal;
 use crate::procedure::surroundings::Surroundings;
-use crate::procedure::{EarlierActs, enrol, make_key, retire, roster_lines, signer_name};
+use crate::procedure::{
+    EarlierActs, KeeperError, KeyChoice, RosterSigned, enrol, make_key, retire, roster_lines,
+    sign_roster, signer_name,
+};
 
 pub(super) fn run(
     arguments: &SignerArguments,
@@ -27,22 +30,27 @@ pub(super) fn run(
             key,
             earlier_acts,
             notebook,
-        } => match enrol(
-            notebook,
-            signer,
-            key,
-            earlier_acts.map(|earlier| match earlier {
-                Earlier::Count => EarlierActs::Count,
-                Earlier::Refuse => EarlierActs::Refuse,
-            }),
-            surroundings,
-        ) {
+        } => match enrol(notebook, signer, key, said_of(*earlier_acts), surroundings) {
             Ok(path) => {
                 terminal.say(&format!("{signer} enrolled on {}", path.display()));
                 ExitStatus::AllWell
             }
             Err(error) => failed(&error.to_string(), terminal),
         },
+        SignerCommand::SignRoster {
+            signer,
+            key,
+            notebook,
+        } => {
+            let choice = match signer.as_deref().map(signer_name).transpose() {
+                Ok(signer) => KeyChoice {
+                    signer,
+                    file: key.clone(),
+                },
+                Err(error) => return failed(&error.to_string(), terminal),
+            };
+            signed(sign_roster(notebook, &choice, surroundings), terminal)
+        }
         SignerCommand::Retire { signer, notebook } => {
             match retire(notebook, signer, surroundings) {
                 Ok(path) => {
@@ -55,6 +63,27 @@ pub(super) fn run(
                 Err(error) => failed(&error.to_string(), terminal),
             }
         }
+    }
+}
+
+fn said_of(earlier: Option<Earlier>) -> Option<EarlierActs> {
+    earlier.map(|earlier| match earlier {
+        Earlier::Count => EarlierActs::Count,
+        Earlier::Refuse => EarlierActs::Refuse,
+    })
+}
+
+fn signed(result: Result<RosterSigned, KeeperError>, terminal: &mut Terminal) -> ExitStatus {
+    match result {
+        Ok(signed) => {
+            terminal.out(&signed.fingerprint);
+            terminal.say(
+                "The roster is signed as it stands. Hand the fingerprint to verifiers by another way than the notebook; after each change of \
+                 roster or people it is signed again.",
+            );
+            ExitStatus::AllWell
+        }
+        Err(error) => failed(&error.to_string(), terminal),
     }
 }
 

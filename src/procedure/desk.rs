@@ -205,7 +205,7 @@ mod tests {
             &SETTINGS.replace("25 °C", "25 mL"),
         );
         let error = Desk::at(&laboratory.page()).unwrap_err().to_string();
-        assert!(error.contains("line 5, column 16"), "{error}");
+        assert!(error.contains("line 5, column 19"), "{error}");
     }
 
     #[test]

@@ -5,7 +5,7 @@ use crate::procedure::records::{Records, RecordsError};
 use crate::procedure::surroundings::Surroundings;
 use crate::procedure::{Desk, DeskError, SignerError, signer_name};
 use crate::record::{Entry, PublicKey, Register, Roster, RosterError, SignerName};
-use chrono::{DateTime, FixedOffset};
+use chrono::{DateTime, FixedOffset, Utc};
 use std::fs;
 use std::io;
 use std::path::{Path, PathBuf};
@@ -57,7 +57,7 @@ pub enum RosterFileError {
 /// [`RosterFileError`].
 pub fn roster_lines(at: &Path) -> Result<Vec<String>, RosterFileError> {
     let (_, _, roster, _) = open(at)?;
-    let day = |time: &chrono::DateTime<chrono::Utc>| time.format("%Y-%m-%d %H:%M:%SZ").to_string();
+    let day = |time: &DateTime<Utc>| time.format("%Y-%m-%d %H:%M:%SZ").to_string();
     Ok(roster
         .enrolments()
         .map(|entry| {
