@@ -58,12 +58,12 @@ const IMPORT_TABLE: [(&str, &[&str], &[&str]); 14] = [
             "report",
             "notebook",
         ],
-        &["chrono", "serde_json", "sha2"],
+        &["chrono", "serde_json", "sha2", "zeroize"],
     ),
     (
         "cli",
         &["procedure", "text"],
-        &["clap", "annotate_snippets", "anstream"],
+        &["clap", "annotate_snippets", "anstream", "serde_json"],
     ),
 ];
 
