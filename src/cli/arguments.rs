@@ -259,6 +259,15 @@ pub(super) struct EntryArguments {
     pub(super) from: Option<String>,
 }
 
+/// What enrolling makes of earlier acts.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(super) enum Earlier {
+    /// They count: the key signs from its first act on
+    Count,
+    /// They do not: the key signs from now on
+    Refuse,
+}
+
 #[derive(Debug, Args)]
 pub(super) struct SignerArguments {
     #[command(subcommand)]
@@ -287,6 +296,21 @@ pub(super) enum SignerCommand {
         signer: String,
         /// The public key's file
         key: PathBuf,
+        /// Whether acts count that were signed with this key before
+        #[arg(long, value_enum)]
+        earlier_acts: Option<Earlier>,
+        /// A page or folder of the notebook
+        #[arg(long, default_value = ".")]
+        notebook: PathBuf,
+    },
+    /// Sign roster and people as they are, as their keeper; verifiers then give the fingerprint with `--keeper`
+    SignRoster {
+        /// The keeper's signer name
+        #[arg(long, value_name = "NAME", group = "whose")]
+        signer: Option<String>,
+        /// Sign with this key: a private key's file, or a `.pub` file whose private half an SSH agent holds
+        #[arg(long, value_name = "FILE", requires = "whose")]
+        key: Option<PathBuf>,
         /// A page or folder of the notebook
         #[arg(long, default_value = ".")]
         notebook: PathBuf,

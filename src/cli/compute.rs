@@ -164,9 +164,10 @@ pub(super) fn tell_faults(
 /// The exit status of a page that could not be worked on.
 pub(super) fn status_of(error: &ComputeError) -> ExitStatus {
     match error {
-        ComputeError::File(_) | ComputeError::Replace(_) | ComputeError::TooLarge { .. } => {
-            ExitStatus::CannotReadOrWrite
-        }
+        ComputeError::File(_)
+        | ComputeError::Replace(_)
+        | ComputeError::Lock(_)
+        | ComputeError::TooLarge { .. } => ExitStatus::CannotReadOrWrite,
         ComputeError::Page(_) | ComputeError::Desk(_) | ComputeError::Placing { .. } => {
             ExitStatus::WrongInput
         }

@@ -19,12 +19,12 @@ mod terminal;
 mod verified_json;
 mod verify;
 
+use crate::cli::arguments::{Arguments, Command};
+use crate::cli::terminal::Terminal;
 use crate::procedure::surroundings::{Program, Surroundings, System};
-use arguments::{Arguments, Command};
 use clap::Parser;
 pub use exit_status::ExitStatus;
 use std::ffi::OsString;
-use terminal::Terminal;
 
 /// Runs the program.
 pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitStatus {

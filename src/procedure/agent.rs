@@ -148,8 +148,8 @@ fn take<'a>(rest: &mut &'a [u8]) -> Result<&'a [u8], AgentError> {
     Ok(bytes)
 }
 
-#[cfg(all(test, unix))]
-#[expect(clippy::unwrap_used, reason = "a test may stop where it cannot go on")]
+#[cfg(test)]
+#[cfg(unix)]
 mod tests {
     use super::*;
     use std::os::unix::net::UnixListener;

@@ -182,7 +182,7 @@ pub fn audit(
 mod tests {
     use super::*;
     use crate::procedure::amend_page;
-    use crate::procedure::specimen::{ACETIC, Laboratory};
+    use crate::procedure::specimen::{ACETIC, CITRIC, Laboratory};
 
     fn audited(laboratory: &Laboratory) -> Audit {
         let notebook = laboratory.path("notebook");
@@ -191,7 +191,7 @@ mod tests {
 
     #[test]
     fn an_amendment_keeps_what_was_signed_and_says_why() {
-        let laboratory = Laboratory::with(ACETIC);
+        let laboratory = Laboratory::with(CITRIC);
         laboratory.seal().unwrap();
         amend_page(&laboratory.page(), "acid", "lot was K-2292").unwrap();
         laboratory.change("notebook/rinse.md", "0.100 mol/L", "0.200 mol/L");
@@ -200,6 +200,7 @@ mod tests {
         assert!(!audit.failed(), "{:?}", audit.findings);
         let states: Vec<&str> = audit.results.iter().map(|result| result.state).collect();
         assert_eq!(states, ["superseded", "sealed"]);
+        assert_ne!(audit.results[0].attachments, audit.results[1].attachments);
         assert_eq!(audit.results[1].reason.as_deref(), Some("lot was K-2292"));
         assert_eq!(audit.acts.len(), 2);
         assert!(

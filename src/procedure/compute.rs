@@ -1,6 +1,6 @@
 //! `compute` and `check`: drafts into the page, or what is wrong with it.
 
-use crate::notebook::{FileError, ReplaceError, create, read_page, replace};
+use crate::notebook::{FileError, LockError, ReplaceError, create, read_page, replace};
 use crate::page::{PAGE_LIMIT, Page, PageError, Written};
 use crate::procedure::claim::is_of_this_question;
 use crate::procedure::page_work::{BlockWork, PageWork};
@@ -87,6 +87,9 @@ pub enum ComputeError {
     /// The page or a plot was not written.
     #[error("{0}")]
     Replace(#[from] ReplaceError),
+    /// Somebody else writes in the notebook.
+    #[error(transparent)]
+    Lock(#[from] LockError),
     /// It is larger than what is read.
     #[error("it is larger than {limit} bytes, the largest page that is read")]
     TooLarge {
@@ -108,8 +111,12 @@ pub enum ComputeError {
 /// # Errors
 /// [`ComputeError`]; the page is then as it was.
 pub fn compute_page(path: &Path, mode: Mode) -> Result<Computed, ComputeError> {
-    let bytes = read_page(path, PAGE_LIMIT)?;
     let desk = Desk::at(path)?;
+    let _lock = match mode {
+        Mode::Write => desk.lock()?,
+        Mode::Check | Mode::DryRun => None,
+    };
+    let bytes = read_page(path, PAGE_LIMIT)?;
     let name = desk.relative(path);
     let mut computed = compute_text(&desk, &name, bytes.clone(), mode)?;
     computed.name = path.display().to_string();

@@ -1,6 +1,6 @@
 //! `countersign` and `amend`: further acts on sealed results.
 
-use crate::notebook::{Lock, LockError, SETTINGS_FILE, read_page, replace};
+use crate::notebook::{LockError, read_page, replace};
 use crate::page::{Edit, Mark, PAGE_LIMIT, Page, Written};
 use crate::procedure::compute::ComputeError;
 use crate::procedure::hand::{Hand, HandError};
@@ -115,7 +115,7 @@ pub fn countersign_page(
 ) -> Result<Vec<String>, CountersignError> {
     let desk = Desk::at(path).map_err(ComputeError::from)?;
     let records = Records::of(desk.notebook.as_ref(), [0; 16])?;
-    let _lock = Lock::on(&desk.root.join(SETTINGS_FILE))?;
+    let _lock = desk.lock()?;
     let note = request.note.as_deref().map(line).transpose()?;
     let verified = verify_page(path, surroundings)?;
     let chosen: Vec<&VerifiedResult> = verified
@@ -227,10 +227,7 @@ fn act_on(
 pub fn amend_page(path: &Path, label: &str, reason: &str) -> Result<(), CountersignError> {
     let text = line(reason.trim())?;
     let desk = Desk::at(path).map_err(ComputeError::from)?;
-    let _lock = match &desk.notebook {
-        Some(notebook) => Some(Lock::on(&notebook.root.join(SETTINGS_FILE))?),
-        None => None,
-    };
+    let _lock = desk.lock()?;
     let bytes = read_page(path, PAGE_LIMIT).map_err(ComputeError::from)?;
     let page = Page::read(bytes.clone()).map_err(ComputeError::from)?;
     let region = page

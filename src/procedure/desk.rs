@@ -1,10 +1,10 @@
 //! What a page is worked with: its notebook, the library with the laboratory's constants, the defaults, the templates.
 
 use crate::block::{self, Defaults};
-use crate::notebook::{Notebook, SettingsError, read_page};
+use crate::notebook::{Lock, LockError, Notebook, SETTINGS_FILE, SettingsError, read_page};
 use crate::report::{Template, TemplateError};
 use crate::substance::{Catalogue, LibraryError};
-use crate::text::LineIndex;
+use crate::text::{Diagnostic, LineIndex};
 use std::path::{Path, PathBuf};
 
 /// Largest file of constants in bytes.
@@ -87,14 +87,31 @@ impl Desk {
         if let Some(folder) = own {
             let name = format!("{task}.md");
             let file = folder.join(&name);
-            if file.is_file()
-                && let Ok(bytes) = read_page(&file, Template::LONGEST)
-                && let Ok(source) = String::from_utf8(bytes)
-            {
+            if file.is_file() {
+                let unreadable = |what: String| TemplateError::Failed {
+                    name: name.clone(),
+                    line: 0,
+                    what,
+                };
+                let bytes = read_page(&file, Template::LONGEST)
+                    .map_err(|error| unreadable(error.to_string()))?;
+                let source = String::from_utf8(bytes)
+                    .map_err(|error| unreadable(format!("not UTF-8: {error}")))?;
                 return Template::replaced(&name, &source);
             }
         }
         Template::built_in(task)
+    }
+
+    /// The right to write in the notebook, until it is dropped; a page that stands alone needs none.
+    ///
+    /// # Errors
+    /// [`LockError`] where somebody else writes.
+    pub fn lock(&self) -> Result<Option<Lock>, LockError> {
+        let notebook = self.notebook.as_ref();
+        notebook
+            .map(|notebook| Lock::on(&notebook.root.join(SETTINGS_FILE)))
+            .transpose()
     }
 
     /// A page's path relative to the root, with forward slashes.
@@ -110,6 +127,7 @@ impl Desk {
 }
 
 fn defaults(notebook: &Notebook) -> Result<Defaults, DeskError> {
+    let path = notebook.root.join(SETTINGS_FILE);
     let mut diagnostics = Vec::new();
     let mut defaults = match &notebook.defaults {
         Some(node) => Defaults::read(node, &mut diagnostics),
@@ -119,23 +137,36 @@ fn defaults(notebook: &Notebook) -> Result<Defaults, DeskError> {
         && !defaults.set_rounding_rule(rule)
     {
         return Err(DeskError::Content {
-            path: notebook.root.join(crate::notebook::SETTINGS_FILE),
+            path,
             message: format!("`{rule}` is no rounding rule; expected `half-even` or `half-up`"),
         });
     }
-    match diagnostics.first() {
+    match diagnostics.iter().find(|fault| fault.is_error()) {
         None => Ok(defaults),
-        Some(fault) => Err(DeskError::Content {
-            path: notebook.root.join(crate::notebook::SETTINGS_FILE),
-            message: format!(
-                "{}{}",
-                fault.message(),
-                fault
-                    .expected()
-                    .map(|expected| format!("; expected {expected}"))
-                    .unwrap_or_default()
-            ),
-        }),
+        Some(fault) => {
+            let bytes = read_page(&path, LARGEST_CONSTANTS).unwrap_or_default();
+            Err(faulty(&path, &String::from_utf8_lossy(&bytes), fault))
+        }
+    }
+}
+
+/// The fault of a file, with its place.
+fn faulty(path: &Path, text: &str, fault: &Diagnostic) -> DeskError {
+    let place = LineIndex::new(text).line_column(fault.span().start());
+    let expected = fault
+        .expected()
+        .map(|expected| format!("; expected {expected}"));
+    let help = fault.help().map(|help| format!("; {help}"));
+    DeskError::Content {
+        path: path.to_owned(),
+        message: format!(
+            "line {}, column {}: {}{}{}",
+            place.line,
+            place.column,
+            fault.message(),
+            expected.unwrap_or_default(),
+            help.unwrap_or_default()
+        ),
     }
 }
 
@@ -154,15 +185,42 @@ fn own_constants(embedded: &Catalogue, file: &Path) -> Result<Catalogue, DeskErr
     let mut diagnostics = Vec::new();
     let stored = block::constants(&text, &mut diagnostics).unwrap_or_default();
     if let Some(fault) = diagnostics.iter().find(|fault| fault.is_error()) {
-        let place = LineIndex::new(&text).line_column(fault.span().start());
-        return Err(failed(format!(
-            "line {}, column {}: {}",
-            place.line,
-            place.column,
-            fault.message()
-        )));
+        return Err(faulty(file, &text, fault));
     }
     embedded
         .overlaid(&stored)
         .map_err(|error| failed(error.to_string()))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::specimen::{ACETIC, Laboratory, SETTINGS};
+
+    #[test]
+    fn faults_of_the_defaults_have_a_place() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.write(
+            "notebook/ionfolio.yaml",
+            &SETTINGS.replace("25 °C", "25 mL"),
+        );
+        let error = Desk::at(&laboratory.page()).unwrap_err().to_string();
+        assert!(error.contains("line 5, column 19"), "{error}");
+    }
+
+    #[test]
+    fn a_laboratorys_own_template_is_never_silently_left_out() {
+        let laboratory = Laboratory::with(ACETIC);
+        let settings = format!("{SETTINGS}templates: forms\n");
+        laboratory.write("notebook/ionfolio.yaml", &settings);
+        std::fs::create_dir(laboratory.path("notebook/forms")).unwrap();
+        let path = laboratory.path("notebook/forms/speciation.md");
+        crate::notebook::create(&path, &[0xff, 0xfe]).unwrap();
+        let desk = Desk::at(&laboratory.page()).unwrap();
+        assert!(matches!(
+            desk.template("speciation"),
+            Err(TemplateError::Failed { .. })
+        ));
+        assert!(desk.template("mixing").is_ok());
+    }
 }

@@ -83,11 +83,15 @@ pub fn examine(
     let records = Records::of(desk.notebook.as_ref(), [0; 16])?;
     let trust = Trust::of(&records);
     let now = surroundings.clock.now(offset_of(desk.notebook.as_ref()));
-    let PageList { pages, links } =
-        pages_below(&desk.root).map_err(|error| ExaminationError::System {
-            path: desk.root.clone(),
-            error,
-        })?;
+    let registers = desk
+        .notebook
+        .as_ref()
+        .map(|notebook| notebook.registers.as_path());
+    let failed = |error| ExaminationError::System {
+        path: desk.root.clone(),
+        error,
+    };
+    let PageList { pages, links } = pages_below(&desk.root, registers).map_err(failed)?;
     let mut verified = Vec::new();
     let mut unread = Vec::new();
     for path in pages {

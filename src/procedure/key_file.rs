@@ -158,7 +158,8 @@ fn write_with(options: &OpenOptions, path: &Path, bytes: &[u8]) -> Result<(), Si
     file.sync_all().map_err(system)
 }
 
-#[cfg(all(test, unix))]
+#[cfg(test)]
+#[cfg(unix)]
 mod tests {
     use super::*;
     use crate::procedure::specimen::{ACETIC, Laboratory};

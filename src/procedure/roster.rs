@@ -1,9 +1,11 @@
 //! `signer`: who is on a notebook's roster.
 
-use crate::notebook::{ReplaceError, create, replace};
+use crate::notebook::{LockError, ReplaceError, create, replace};
+use crate::procedure::records::{Records, RecordsError};
 use crate::procedure::surroundings::Surroundings;
 use crate::procedure::{Desk, DeskError, SignerError, signer_name};
-use crate::record::{PublicKey, Roster, RosterError};
+use crate::record::{Entry, PublicKey, Register, Roster, RosterError, SignerName};
+use chrono::{DateTime, FixedOffset, Utc};
 use std::fs;
 use std::io;
 use std::path::{Path, PathBuf};
@@ -23,6 +25,22 @@ pub enum RosterFileError {
     /// The roster refuses.
     #[error(transparent)]
     Roster(#[from] RosterError),
+    /// The notebook's records cannot be worked with.
+    #[error(transparent)]
+    Records(#[from] RecordsError),
+    /// Somebody else writes.
+    #[error(transparent)]
+    Lock(#[from] LockError),
+    /// There are acts from before, and nothing was said of them.
+    #[error(
+        "{signer} signed with this key from {} on: say whether these acts count (`--earlier-acts count`) or not (`--earlier-acts refuse`)", first.to_rfc3339()
+    )]
+    EarlierActs {
+        /// The signer.
+        signer: SignerName,
+        /// The time of the first.
+        first: DateTime<FixedOffset>,
+    },
     /// A file cannot be read or written, or holds no public key.
     #[error("{path}: {reason}", path = .path.display())]
     File {
@@ -38,8 +56,8 @@ pub enum RosterFileError {
 /// # Errors
 /// [`RosterFileError`].
 pub fn roster_lines(at: &Path) -> Result<Vec<String>, RosterFileError> {
-    let (_, roster, _) = open(at)?;
-    let day = |time: &chrono::DateTime<chrono::Utc>| time.format("%Y-%m-%d %H:%M:%SZ").to_string();
+    let (_, _, roster, _) = open(at)?;
+    let day = |time: &DateTime<Utc>| time.format("%Y-%m-%d %H:%M:%SZ").to_string();
     Ok(roster
         .enrolments()
         .map(|entry| {
@@ -60,21 +78,45 @@ pub fn roster_lines(at: &Path) -> Result<Vec<String>, RosterFileError> {
         .collect())
 }
 
+/// What enrolling makes of acts that were signed with the key before.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum EarlierActs {
+    /// The key signs from its first act on.
+    Count,
+    /// The key signs from now on; what was signed before does not verify.
+    Refuse,
+}
+
 /// Puts a public key on the roster; gives back the roster's path.
 ///
 /// # Errors
-/// [`RosterFileError`].
+/// [`RosterFileError`]; above all [`RosterFileError::EarlierActs`] where there are some and nothing was said of them.
 pub fn enrol(
     at: &Path,
     signer: &str,
     key: &Path,
+    earlier: Option<EarlierActs>,
     surroundings: &Surroundings<'_>,
 ) -> Result<PathBuf, RosterFileError> {
-    let (path, mut roster, before) = open(at)?;
+    let (desk, path, mut roster, before) = open(at)?;
+    let _lock = desk.lock()?;
     let signer = signer_name(signer)?;
     let text = fs::read_to_string(key).map_err(|error| failed(key, &error))?;
     let public = PublicKey::parse(text.trim_end()).map_err(|error| failed(key, &error))?;
-    roster.enrol(signer, public, surroundings.clock.now(0))?;
+    let records = Records::of(desk.notebook.as_ref(), [0; 16])?;
+    let with_this_key = |entry: &&Entry| {
+        let used = entry.act.signature().public_key();
+        entry.act.act().signer == signer && used.is_ok_and(|used| used.is_same_key(&public))
+    };
+    let acts = records.registers.iter().flat_map(Register::entries);
+    let times = acts.filter(with_this_key).map(|entry| entry.act.act().time);
+    let now = surroundings.clock.now(0);
+    let from = match (times.min().filter(|first| *first < now), earlier) {
+        (None, _) | (Some(_), Some(EarlierActs::Refuse)) => now,
+        (Some(first), Some(EarlierActs::Count)) => first,
+        (Some(first), None) => return Err(RosterFileError::EarlierActs { signer, first }),
+    };
+    roster.enrol(signer, public, from)?;
     write(&path, before, &roster)
 }
 
@@ -87,7 +129,8 @@ pub fn retire(
     signer: &str,
     surroundings: &Surroundings<'_>,
 ) -> Result<PathBuf, RosterFileError> {
-    let (path, mut roster, before) = open(at)?;
+    let (desk, path, mut roster, before) = open(at)?;
+    let _lock = desk.lock()?;
     let signer = signer_name(signer)?;
     let keys: Vec<PublicKey> = roster
         .enrolments()
@@ -103,18 +146,19 @@ pub fn retire(
     write(&path, before, &roster)
 }
 
-type Opened = (PathBuf, Roster, Option<Vec<u8>>);
+type Opened = (Desk, PathBuf, Roster, Option<Vec<u8>>);
 
 fn open(at: &Path) -> Result<Opened, RosterFileError> {
     let desk = Desk::at(at)?;
-    let notebook = desk.notebook.ok_or(RosterFileError::NoNotebook)?;
-    let before = match fs::read(&notebook.roster) {
+    let notebook = desk.notebook.as_ref().ok_or(RosterFileError::NoNotebook)?;
+    let path = notebook.roster.clone();
+    let before = match fs::read(&path) {
         Ok(bytes) => Some(bytes),
         Err(error) if error.kind() == io::ErrorKind::NotFound => None,
-        Err(error) => return Err(failed(&notebook.roster, &error)),
+        Err(error) => return Err(failed(&path, &error)),
     };
     let roster = Roster::parse(before.as_deref().unwrap_or_default());
-    Ok((notebook.roster, roster, before))
+    Ok((desk, path, roster, before))
 }
 
 fn write(
@@ -135,5 +179,46 @@ fn failed(path: &Path, error: &dyn std::error::Error) -> RosterFileError {
     RosterFileError::File {
         path: path.to_owned(),
         reason: error.to_string(),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::procedure::specimen::{ACETIC, Laboratory};
+
+    #[test]
+    fn a_key_that_signed_before_is_enrolled_only_with_a_word_on_that() {
+        for (earlier, found) in [
+            (EarlierActs::Count, &[][..]),
+            (EarlierActs::Refuse, &["key-outside-dates"]),
+        ] {
+            let laboratory = Laboratory::with(ACETIC);
+            laboratory.seal().unwrap();
+            let key = laboratory.path("keys/bench.analyst.pub");
+            let (page, surroundings) = (laboratory.page(), laboratory.surroundings());
+            let enrol = |earlier| enrol(&page, "bench.analyst", &key, earlier, &surroundings);
+            let silent = enrol(None);
+            assert!(
+                matches!(silent, Err(RosterFileError::EarlierActs { .. })),
+                "{silent:?}"
+            );
+            enrol(Some(earlier)).unwrap();
+            assert_eq!(laboratory.found(), found);
+            assert!(laboratory.verify().results[0].unlisted.is_empty());
+        }
+    }
+
+    #[test]
+    fn a_retired_key_signs_no_more_and_what_it_signed_stays_good() {
+        let laboratory = Laboratory::with(ACETIC);
+        let key = laboratory.path("keys/bench.analyst.pub");
+        let (page, surroundings) = (laboratory.page(), laboratory.surroundings());
+        enrol(&page, "bench.analyst", &key, None, &surroundings).unwrap();
+        laboratory.seal().unwrap();
+        retire(&page, "bench.analyst", &surroundings).unwrap();
+        assert_eq!(laboratory.found(), [""; 0]);
+        laboratory.write("notebook/rinse.md", &ACETIC.replace("0.100", "0.200"));
+        assert!(laboratory.seal().is_err());
     }
 }

@@ -3,7 +3,7 @@
 //! The register is written and synced before the page is replaced. A run that was stopped between the two is completed by the next one: the act
 //! that the register holds is put into the page, and none is made anew.
 
-use crate::notebook::{Lock, LockError, SETTINGS_FILE, read_page, replace};
+use crate::notebook::{LockError, read_page, replace};
 use crate::page::{PAGE_LIMIT, Page, Region};
 use crate::procedure::compute::{ComputeError, write_plots};
 use crate::procedure::hand::{Hand, HandError};
@@ -140,7 +140,7 @@ pub fn seal_page(
         .fill(&mut drawn)
         .map_err(SignerError::Entropy)?;
     let records = Records::of(desk.notebook.as_ref(), drawn)?;
-    let _lock = Lock::on(&desk.root.join(SETTINGS_FILE))?;
+    let _lock = desk.lock()?;
     let bytes = read_page(path, PAGE_LIMIT).map_err(ComputeError::from)?;
     let page = Page::read(bytes.clone()).map_err(ComputeError::from)?;
     let work = PageWork::solve(&desk, &desk.relative(path), page);

@@ -14,6 +14,10 @@ use zeroize::Zeroizing;
 
 pub(super) const ACETIC: &str = "# Rinse\r\n\r\n```equilibrium\r\nlabel: acid\r\ntask: speciation\r\ncontents:\r\n  acetic acid: 0.100 mol/L\r\n```\r\n\r\nEnd  \r\n";
 
+/// Of several steps, so that its result has a plot.
+pub(super) const CITRIC: &str =
+    "```equilibrium\nlabel: acid\ntask: speciation\ncontents:\n  citric acid: 0.100 mol/L\n```\n";
+
 /// The first block is made from the second.
 pub(super) const MADE_FROM: &str = "```equilibrium\nlabel: diluted\ntask: mixing\nportions:\n  - volume: 100.0 mL\n    solution: stock\n  - volume: 100.0 mL\n    contents: water\n```\n\n```equilibrium\nlabel: stock\ntask: speciation\nvolume: 1.000 L\ncontents:\n  acetic acid: 0.100 mol/L\n```\n";
 

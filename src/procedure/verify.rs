@@ -1,6 +1,6 @@
 //! `verify`: bytes, signatures, policy, registers, and by computing again.
 
-use crate::notebook::{Notebook, pages_below, read_page};
+use crate::notebook::{Notebook, SettingsError, pages_below, read_page};
 use crate::page::{PAGE_LIMIT, Page};
 use crate::procedure::compute::ComputeError;
 use crate::procedure::inspection::Inspection;
@@ -118,6 +118,9 @@ pub enum PagesError {
     /// The system refuses.
     #[error("{0}")]
     System(#[from] std::io::Error),
+    /// The notebook's settings cannot be used.
+    #[error(transparent)]
+    Settings(#[from] SettingsError),
     /// There is nothing there.
     #[error("there is no such file or folder")]
     Missing,
@@ -129,7 +132,12 @@ pub enum PagesError {
 /// [`PagesError`].
 pub fn pages(path: &Path) -> Result<Vec<PathBuf>, PagesError> {
     if path.is_dir() {
-        return Ok(pages_below(path)?.pages);
+        let path = std::path::absolute(path)?;
+        let notebook = Notebook::around(&path)?;
+        let registers = notebook
+            .as_ref()
+            .map(|notebook| notebook.registers.as_path());
+        return Ok(pages_below(&path, registers)?.pages);
     }
     if path.exists() {
         Ok(vec![path.to_owned()])
