@@ -204,6 +204,24 @@ mod tests {
     }
 
     #[test]
+    fn hand_methods_agree_with_the_exact_quadratic_on_own_cases() {
+        // Own cases: pK and C in mol/L. x² + K x - K C = 0 is solved here in its plain form, whose cancellation costs less than 1e-9 in these cases.
+        // Successive approximation stops when the second decimal moves by at most one, so it may be off by two of them.
+        for (pk, concentration) in [(4.21, 0.045), (3.13, 0.02), (4.76, 0.1), (2.85, 0.035)] {
+            let case = HandCase {
+                pks: vec![pk, pk + 3.5],
+                concentration,
+                ..malonic()
+            };
+            let k = exp10(-pk);
+            let x = 0.5 * ((k * k + 4.0 * k * concentration).sqrt() - k);
+            assert!((case.first_step().unwrap() + log10(x)).abs() < 1e-9, "{pk}");
+            let (ph, _) = case.successive(2).unwrap();
+            assert!((ph + log10(x)).abs() <= 0.02, "{pk}: {ph}");
+        }
+    }
+
+    #[test]
     fn natures_follow_from_the_protons() {
         assert_eq!(nature(3.0, 3), Nature::Acid);
         assert_eq!(nature(0.0, 3), Nature::Base);
