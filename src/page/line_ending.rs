@@ -8,13 +8,6 @@ pub(super) enum LineEnding {
 }
 
 impl LineEnding {
-    pub(super) const fn text(self) -> &'static str {
-        match self {
-            Self::Lf => "\n",
-            Self::CrLf => "\r\n",
-        }
-    }
-
     /// The ending of the line that holds `offset`; LF for the last line of a page without one.
     pub(super) fn of_line(text: &str, offset: usize) -> Self {
         let rest = text.get(offset..).unwrap_or_default();

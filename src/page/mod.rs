@@ -37,6 +37,7 @@ mod pairing;
 mod placing;
 mod reading;
 mod region;
+mod signed_question;
 mod splice;
 mod written;
 

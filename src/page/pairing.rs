@@ -9,6 +9,7 @@ use crate::{
         line_ending::{ending_before, line_end},
         markdown::Outline,
         region::Region,
+        signed_question,
     },
     text::{Diagnostic, Excerpt, Rule, Span},
 };
@@ -81,13 +82,18 @@ impl Pairing {
         let notice = head
             .mark
             .and_then(|mark| notice(text, opening.start(), mark));
-        let first = notice.map_or(opening.start(), Span::start);
+        let question = notice.and_then(|notice| {
+            signed_question::above(text, notice.start(), &outline.fences, head.label)
+        });
+        let marked = notice.map_or(opening.start(), Span::start);
+        let first = question.as_ref().map_or(marked, |kept| kept.span.start());
         self.regions.push(Region {
             label: head.label.to_owned(),
             label_span: head.label_span,
             mark: head.mark,
             opening,
             notice,
+            question,
             span: Span::new(opening.start(), last.end()),
             owned: Span::new(owned_start(text, first), last.end()),
             chain_end: last.end(),

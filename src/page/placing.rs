@@ -5,6 +5,7 @@ use crate::{
         Block, Edit, Mark, Page, Region, SpliceError, Written,
         comment::{closing, opening},
         line_ending::{LineEnding, with_ending},
+        signed_question,
         splice::spliced,
     },
     text::Span,
@@ -46,6 +47,9 @@ pub enum PlacingError {
     /// The notice is not one line of text.
     #[error("the notice is not one line")]
     Notice,
+    /// The question to be kept is not whole lines that end with LF.
+    #[error("the question is not whole lines")]
+    Question,
 }
 
 impl Page {
@@ -115,24 +119,40 @@ impl Page {
     /// The edit that marks a result and puts a visible line above it: `> **Superseded** ` and the notice, which
     /// must be one line of Markdown, escaped by the caller. A mark and line that stand there already are replaced.
     ///
+    /// Above that line goes `question`, the content of the block as it was signed, in a fence of its own: the block may
+    /// change from now on. A copy that stands there already stays.
+    ///
     /// # Errors
     ///
-    /// [`PlacingError::Notice`] if the notice is empty or not one line.
-    pub fn marking(&self, region: &Region, mark: Mark, notice: &str) -> Result<Edit, PlacingError> {
+    /// [`PlacingError::Notice`] if the notice is empty or not one line, [`PlacingError::Question`] if the question is
+    /// not whole lines.
+    pub fn marking(
+        &self,
+        region: &Region,
+        mark: Mark,
+        notice: &str,
+        question: &str,
+    ) -> Result<Edit, PlacingError> {
         if notice.trim().is_empty() || notice.contains(['\n', '\r']) {
             return Err(PlacingError::Notice);
         }
-        let ending = LineEnding::of_line(self.text(), region.opening.start()).text();
+        let fence =
+            signed_question::fence(region.label(), question).ok_or(PlacingError::Question)?;
+        let kept = region.question().map_or(fence, |_| String::new());
+        let ending = LineEnding::of_line(self.text(), region.opening.start());
         let comment = opening(region.label(), Some(mark));
         let start = region.notice().map_or(region.opening.start(), Span::start);
         let span = Span::new(start, region.opening.end());
         Ok(Edit {
             span,
-            replacement: format!("{}{notice}{ending}{comment}", mark.notice()),
+            replacement: with_ending(
+                &format!("{kept}{}{notice}\n{comment}", mark.notice()),
+                ending,
+            ),
         })
     }
 
-    /// The edit that takes a result out, with its notice and the blank line that was put before it.
+    /// The edit that takes a result out, with its notice, the question kept above it and the blank line that was put before it.
     pub fn removing(&self, region: &Region) -> Edit {
         Edit {
             span: region.owned,
@@ -283,6 +303,7 @@ mod tests {
                 &page.results()[0],
                 Mark::Superseded,
                 "by `a`: balance was out",
+                "label: a\n",
             )
             .unwrap();
         let page = read(page.with(vec![edit]).unwrap());
@@ -335,7 +356,7 @@ mod tests {
         );
         let page = read(format!("{block}{first}{last}"));
         assert_eq!(
-            page.marking(&page.results()[0], Mark::Withdrawn, "a\nb"),
+            page.marking(&page.results()[0], Mark::Withdrawn, "a\nb", ""),
             Err(PlacingError::Notice)
         );
     }

@@ -13,6 +13,7 @@ pub struct Region {
     pub(super) mark: Option<Mark>,
     pub(super) opening: Span,
     pub(super) notice: Option<Span>,
+    pub(super) question: Option<Fenced>,
     pub(super) span: Span,
     pub(super) owned: Span,
     pub(super) chain_end: usize,
@@ -55,6 +56,11 @@ impl Region {
     /// The visible line above a superseded or withdrawn result, if it stands there.
     pub fn notice(&self) -> Option<Span> {
         self.notice
+    }
+
+    /// The question as it was signed, kept above the notice of a superseded or withdrawn result when it was marked.
+    pub fn question(&self) -> Option<&Fenced> {
+        self.question.as_ref()
     }
 
     /// Everything between the two comments' lines.

@@ -1,9 +1,10 @@
-//! `countersign` and `amend`: further acts on sealed results.
+//! `countersign`: further acts on sealed results.
 
-use crate::notebook::{LockError, read_page, replace};
-use crate::page::{Edit, Mark, PAGE_LIMIT, Page, Written};
+use crate::notebook::{LockError, replace};
+use crate::page::{Edit, Mark, Written};
 use crate::procedure::compute::ComputeError;
 use crate::procedure::hand::{Hand, HandError};
+use crate::procedure::inspection::question_of;
 use crate::procedure::records::{Records, RecordsError};
 use crate::procedure::seal::with_cause;
 use crate::procedure::signer::{KeyChoice, key_of};
@@ -85,6 +86,14 @@ pub enum CountersignError {
     /// It does not verify, so nothing may be added to it.
     #[error("`{label}` does not verify; nothing was signed")]
     NotVerified {
+        /// The label.
+        label: String,
+    },
+    /// The block was changed before the amendment, so that its text as signed cannot be kept.
+    #[error(
+        "the block of `{label}` is not the one that was signed, so it cannot be kept; put it back as it was, amend, and change it then"
+    )]
+    QuestionChanged {
         /// The label.
         label: String,
     },
@@ -204,6 +213,7 @@ fn act_on(
             .map_err(|error| placing(label, &error))?,
     ];
     if judgement == Judgement::Withdrawn {
+        let question = question_of(&verified.page, label).ok_or_else(not_verified)?;
         let notice = format!(
             "on {} by {}.",
             hand.now().format("%Y-%m-%d"),
@@ -212,7 +222,7 @@ fn act_on(
         edits.push(
             verified
                 .page
-                .marking(region, Mark::Withdrawn, &notice)
+                .marking(region, Mark::Withdrawn, &notice, question)
                 .map_err(|error| placing(label, &error))?,
         );
     }
@@ -220,44 +230,13 @@ fn act_on(
     Ok(edits)
 }
 
-/// Marks a sealed result as superseded, with the reason in view; the next `compute` opens a draft.
-///
-/// # Errors
-/// [`CountersignError`]; the page is then as it was.
-pub fn amend_page(path: &Path, label: &str, reason: &str) -> Result<(), CountersignError> {
-    let text = line(reason.trim())?;
-    let desk = Desk::at(path).map_err(ComputeError::from)?;
-    let _lock = desk.lock()?;
-    let bytes = read_page(path, PAGE_LIMIT).map_err(ComputeError::from)?;
-    let page = Page::read(bytes.clone()).map_err(ComputeError::from)?;
-    let region = page
-        .results()
-        .iter()
-        .find(|region| region.label() == label && region.mark().is_none() && !region.is_draft())
-        .ok_or_else(|| CountersignError::NoResult {
-            label: Some(label.to_owned()),
-        })?;
-    let notice = format!(
-        "by the next result of `{label}`. Reason: {}",
-        escaped(text.as_str())
-    );
-    let edit = page
-        .marking(region, Mark::Superseded, &notice)
-        .map_err(|error| placing(label, &error))?;
-    let after = page
-        .with(vec![edit])
-        .map_err(|error| placing(label, &error))?;
-    replace(path, &bytes, &after).map_err(ComputeError::from)?;
-    Ok(())
-}
-
-fn line(text: &str) -> Result<TextLine, CountersignError> {
+pub(super) fn line(text: &str) -> Result<TextLine, CountersignError> {
     TextLine::new(text).map_err(|_fault| CountersignError::Text {
         text: text.to_owned(),
     })
 }
 
-fn placing(label: &str, error: &dyn std::error::Error) -> ComputeError {
+pub(super) fn placing(label: &str, error: &dyn std::error::Error) -> ComputeError {
     ComputeError::Placing {
         label: label.to_owned(),
         reason: error.to_string(),

@@ -17,6 +17,14 @@ use crate::record::{
 use chrono::{DateTime, FixedOffset};
 use std::rc::Rc;
 
+/// The content of the block of a label, as it stands in the page.
+pub(super) fn question_of<'p>(page: &'p Page, label: &str) -> Option<&'p str> {
+    page.blocks()
+        .iter()
+        .map(|block| block.content().text())
+        .find(|content| block::outline(content).label.as_deref() == Some(label))
+}
+
 /// A page to inspect, and against what.
 #[derive(Debug)]
 pub(super) struct Inspection<'a> {
@@ -35,23 +43,22 @@ impl Inspection<'_> {
         if region.is_draft() {
             return VerifiedResult::draft(region.label());
         }
-        let question = self.question(region.label());
+        // A marked result keeps its own question; the block belongs to the successor.
+        let kept = region.question().map(|fence| fence.content.text());
+        let question = kept.or_else(|| question_of(self.page, region.label()));
         let trust = self.trust_for(region);
-        let verification = self.verification(region, question.as_deref(), &trust);
+        let verification = self.verification(region, question, &trust);
         let mut findings = verification.findings;
         let superseded = region.mark().is_some();
         if superseded {
-            // What was asked then may stand changed in the page now: the block belongs to the successor.
             findings.retain(|finding| {
                 !matches!(
                     finding.fault,
-                    Fault::QuestionChanged
-                        | Fault::RequiredActMissing { .. }
-                        | Fault::Overdue { .. }
+                    Fault::RequiredActMissing { .. } | Fault::Overdue { .. }
                 )
             });
         }
-        let recomputed = match (&verification.record, &question) {
+        let recomputed = match (&verification.record, question) {
             (Some(record), Some(question)) if !superseded => Again {
                 desk: self.desk,
                 name: self.name,
@@ -123,16 +130,6 @@ impl Inspection<'_> {
             now: self.now,
         };
         record::verify(&parts, &authority)
-    }
-
-    /// The content of the block of a label.
-    fn question(&self, label: &str) -> Option<String> {
-        self.page
-            .blocks()
-            .iter()
-            .map(|block| block.content().text())
-            .find(|content| block::outline(content).label.as_deref() == Some(label))
-            .map(str::to_owned)
     }
 
     /// The trust of the registers, and of acts that are in no register.

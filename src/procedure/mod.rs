@@ -6,6 +6,7 @@
 pub mod surroundings;
 
 mod agent;
+mod amend;
 mod audit;
 mod audit_contents;
 mod audit_report;
@@ -37,14 +38,13 @@ mod trust;
 mod verify;
 
 pub use agent::AgentError;
+pub use amend::amend_page;
 pub use audit::{Audit, AuditAct, AuditConstant, AuditFinding, AuditResult, AuditSigner, audit};
 pub use audit_report::{AuditFormat, audit_report};
 pub use compute::{
     ComputeError, Computed, ComputedBlock, Mode, Standing, compute_page, compute_text,
 };
-pub use countersign::{
-    CountersignError, CountersignRequest, Judgement, amend_page, countersign_page,
-};
+pub use countersign::{CountersignError, CountersignRequest, Judgement, countersign_page};
 pub use desk::{Desk, DeskError};
 pub use entry::{EntryError, TEMPLATES, new_page};
 pub use examination::{ExaminationError, Examined, examine, is_notebook};

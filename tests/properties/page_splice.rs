@@ -41,6 +41,13 @@ const ANSWERS: &[&str] = &[
     "x\n\n\n",
 ];
 
+const QUESTIONS: &[&str] = &[
+    "",
+    "label: a\n\n  b: c\n",
+    "```\n````signed-question a\n",
+    "<!-- ionfolio end b-0 -->\n",
+];
+
 /// A page of random stretches with one of the line endings, or both, with or without byte order mark and last newline.
 fn pages() -> impl Strategy<Value = String> {
     let stretch = (prop::sample::select(STRETCHES), 0_u8..3);
@@ -140,14 +147,20 @@ proptest! {
     }
 
     #[test]
-    fn a_marked_result_goes_with_its_notice(page in pages(), twice in any::<bool>()) {
+    fn a_marked_result_goes_with_its_notice(
+        page in pages(),
+        twice in any::<bool>(),
+        question in prop::sample::select(QUESTIONS),
+    ) {
         let before = read(page.clone().into_bytes());
         let all = |index: usize| Written::draft(&format!("b-{index}"), "x\n").ok();
         let mut current = read(with_results(&before, &all));
         for mark in [Mark::Superseded, if twice { Mark::Superseded } else { Mark::Withdrawn }] {
-            let edits = current.results().iter().map(|region| current.marking(region, mark, "by `c`").unwrap());
+            let edits = current.results().iter().map(|region| current.marking(region, mark, "by `c`", question).unwrap());
             current = read(current.with(edits.collect()).unwrap());
             prop_assert!(current.results().iter().all(|region| region.mark() == Some(mark)));
+            let kept = |region: &Region| region.question().map(|fence| fence.content.text().to_owned());
+            prop_assert!(current.results().iter().all(|region| kept(region).as_deref() == Some(question)));
             prop_assert_eq!(contents(&current), contents(&before));
             prop_assert_eq!(current.without_results(), page.as_bytes());
         }
