@@ -74,7 +74,10 @@ Who did what when, with which constants, what was amended and why, what does not
 
   ionfolio audit . > audit.md
   ionfolio audit . --format html > audit.html
-  ionfolio audit rinse --format csv")]
+  ionfolio audit rinse --format csv
+  ionfolio audit . --signer bench.analyst --since 2026-11-01 --until 2026-11-30
+
+What a filter leaves out is examined all the same, and counted in the report and in the exit status.")]
     Audit(AuditArguments),
     /// List or show the constants library
     Constants(ConstantsArguments),
@@ -224,6 +227,21 @@ pub(super) struct AuditArguments {
     /// How the report is written
     #[arg(long, value_enum, default_value = "markdown")]
     pub(super) format: ReportFormat,
+    /// Only results with an act of this signer
+    #[arg(long)]
+    pub(super) signer: Option<String>,
+    /// Only results that name this substance
+    #[arg(long)]
+    pub(super) substance: Option<String>,
+    /// Only results of this label
+    #[arg(long)]
+    pub(super) label: Option<String>,
+    /// Only results with an act on this day or later
+    #[arg(long, value_name = "YYYY-MM-DD")]
+    pub(super) since: Option<String>,
+    /// Only results with an act on this day or earlier
+    #[arg(long, value_name = "YYYY-MM-DD")]
+    pub(super) until: Option<String>,
     /// Fingerprint of the key of the roster's keeper, learnt from outside the notebook
     #[arg(long, value_name = "SHA256:...")]
     pub(super) keeper: Option<String>,

@@ -4,13 +4,20 @@ use crate::cli::ExitStatus;
 use crate::cli::arguments::{AuditArguments, ReportFormat};
 use crate::cli::terminal::Terminal;
 use crate::procedure::surroundings::Surroundings;
-use crate::procedure::{AuditFormat, audit, audit_report};
+use crate::procedure::{AuditFilter, AuditFormat, audit, audit_report, signer_name};
 
 pub(super) fn run(
     arguments: &AuditArguments,
     surroundings: &Surroundings<'_>,
     terminal: &mut Terminal,
 ) -> ExitStatus {
+    let filter = match filter(arguments) {
+        Ok(filter) => filter,
+        Err(message) => {
+            terminal.say(&message);
+            return ExitStatus::WrongInput;
+        }
+    };
     let mut status = ExitStatus::AllWell;
     let mut audits = Vec::new();
     for path in &arguments.paths {
@@ -22,7 +29,7 @@ pub(super) fn run(
             status = status.and(ExitStatus::CannotReadOrWrite);
             continue;
         }
-        match audit(path, arguments.keeper.as_deref(), surroundings) {
+        match audit(path, arguments.keeper.as_deref(), &filter, surroundings) {
             Ok(audit) => {
                 if audit.asks() {
                     status = status.and(ExitStatus::Finding);
@@ -46,4 +53,18 @@ pub(super) fn run(
     };
     terminal.out_bytes(audit_report(&audits, format).as_bytes());
     status
+}
+
+/// What the report is narrowed to, or why that cannot be.
+fn filter(arguments: &AuditArguments) -> Result<AuditFilter, String> {
+    let signer = arguments.signer.as_deref().map(signer_name).transpose();
+    let filter = AuditFilter {
+        signer: signer.map_err(|error| error.to_string())?,
+        substance: arguments.substance.clone(),
+        label: arguments.label.clone(),
+        ..AuditFilter::default()
+    };
+    filter
+        .between(arguments.since.as_deref(), arguments.until.as_deref())
+        .map_err(|error| error.to_string())
 }

@@ -1,7 +1,9 @@
 //! `audit`: what an inspector asks of a notebook, as plain data: who did what when, with which constants, what was amended and why, what does
 //! not verify, what was never reviewed.
 
+use crate::procedure::Desk;
 use crate::procedure::audit_contents::contents;
+use crate::procedure::audit_filter::AuditFilter;
 use crate::procedure::examination::{ExaminationError, examine};
 use crate::procedure::surroundings::Surroundings;
 use crate::record::Finding;
@@ -17,6 +19,10 @@ pub struct Audit {
     pub notebook: Option<String>,
     /// The folder in the notebook that is reported on; empty for all of it.
     pub scope: String,
+    /// What the report is narrowed to; empty where nothing is left out.
+    pub filters: Vec<String>,
+    /// What is left out by that.
+    pub left_out: LeftOut,
     /// When it was examined.
     pub time: String,
     /// The program that examined it.
@@ -37,6 +43,17 @@ pub struct Audit {
     pub constants: Vec<AuditConstant>,
     /// Files that could not be read, and links that were not followed.
     pub unread: Vec<String>,
+}
+
+/// What a narrowed report does not show.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize)]
+pub struct LeftOut {
+    /// How many results.
+    pub results: usize,
+    /// How many warnings and failures of those results.
+    pub findings: usize,
+    /// Whether any of those is a failure.
+    pub failing: bool,
 }
 
 /// One result.
@@ -155,38 +172,48 @@ impl Audit {
     /// Whether anything asks for something to be done; a note alone does not.
     pub fn asks(&self) -> bool {
         let more = |finding: &AuditFinding| finding.severity != "note";
-        self.failed() || self.findings.iter().any(more) || !self.unread.is_empty()
+        self.failed()
+            || self.findings.iter().any(more)
+            || self.left_out.findings > 0
+            || !self.unread.is_empty()
     }
 }
 
-/// Audits the notebook around a path; a folder or page below the notebook's own narrows the report to it.
+/// Audits the notebook around a path; a folder or page below the notebook's own narrows the report to it, and so does a filter. Whatever is
+/// left out is examined all the same, and counted.
 ///
 /// # Errors
 /// [`ExaminationError`].
 pub fn audit(
     path: &Path,
     keeper: Option<&str>,
+    filter: &AuditFilter,
     surroundings: &Surroundings<'_>,
 ) -> Result<Audit, ExaminationError> {
     let examined = examine(path, keeper, surroundings)?;
     let scope = examined.notebook.relative(path).unwrap_or_default();
-    Ok(contents(
-        &examined,
-        scope,
-        keeper,
-        &surroundings.program.name,
-    ))
+    let desk = Desk::at(path)?;
+    let mut audit = contents(&examined, scope, keeper, &filter.at(&desk));
+    audit.program.clone_from(&surroundings.program.name);
+    audit.filters = filter.words();
+    Ok(audit)
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
     use crate::procedure::amend_page;
-    use crate::procedure::specimen::{ACETIC, CITRIC, Laboratory};
+    use crate::procedure::specimen::{ACETIC, CITRIC, Laboratory, MADE_FROM};
 
     fn audited(laboratory: &Laboratory) -> Audit {
         let notebook = laboratory.path("notebook");
-        audit(&notebook, None, &laboratory.surroundings()).unwrap()
+        audit(
+            &notebook,
+            None,
+            &AuditFilter::default(),
+            &laboratory.surroundings(),
+        )
+        .unwrap()
     }
 
     #[test]
@@ -209,6 +236,38 @@ mod tests {
                 .iter()
                 .any(|constant| constant.used_in.len() == 1)
         );
+    }
+
+    #[test]
+    fn a_copied_page_is_a_copy_and_not_a_second_result() {
+        let laboratory = Laboratory::with(ACETIC);
+        laboratory.seal().unwrap();
+        laboratory.write("notebook/copy.md", &laboratory.read("notebook/rinse.md"));
+        let audit = audited(&laboratory);
+        let copied: Vec<&str> = audit
+            .findings
+            .iter()
+            .filter(|found| found.name == "copied-result")
+            .map(|found| found.place.as_str())
+            .collect();
+        assert_eq!(copied, ["copy.md#acid, as a whole"]);
+        assert!(audit.failed());
+    }
+
+    #[test]
+    fn an_act_that_is_gone_from_a_register_is_found() {
+        let laboratory = Laboratory::with(MADE_FROM);
+        laboratory.seal().unwrap();
+        let register = "notebook/registers/bench.analyst.md";
+        let text = laboratory.read(register);
+        let (_first, rest) = text.split_once("```record\n").unwrap();
+        let (_first, second) = rest.split_once("```record\n").unwrap();
+        laboratory.write(register, &format!("```record\n{second}"));
+        let audit = audited(&laboratory);
+        let found = |name: &str| audit.findings.iter().any(|found| found.name == name);
+        assert!(found("chain-gap"), "{:?}", audit.findings);
+        assert!(found("act-missing-from-register"));
+        assert!(audit.failed());
     }
 
     #[test]

@@ -2,33 +2,38 @@
 
 use crate::block;
 use crate::procedure::audit::{
-    Audit, AuditAct, AuditConstant, AuditFinding, AuditResult, AuditSigner,
+    Audit, AuditAct, AuditConstant, AuditFinding, AuditResult, AuditSigner, LeftOut,
 };
+use crate::procedure::audit_filter::Sieve;
 use crate::procedure::examination::Examined;
 use crate::procedure::page_work::embedded;
 use crate::procedure::recomputation::Recomputed;
 use crate::procedure::verify::{VerifiedPage, VerifiedResult};
-use crate::record::{Entry, Meaning, Register, SignedAct};
+use crate::record::{Digest, Entry, Finding, Meaning, Register, Severity, SignedAct};
 use crate::substance::StoredPk;
 use std::collections::{BTreeMap, BTreeSet};
 
-/// The audit of an examined notebook, narrowed to a folder or page of it.
+/// A result and its page.
+type Placed<'e> = (&'e VerifiedPage, &'e VerifiedResult);
+
+/// The audit of an examined notebook, narrowed to a folder or page of it and by a filter. Program and filters are for the caller to name.
 pub(super) fn contents(
     examined: &Examined,
     scope: String,
     keeper: Option<&str>,
-    program: &str,
+    sieve: &Sieve<'_>,
 ) -> Audit {
     let pages: Vec<&VerifiedPage> = examined
         .pages
         .iter()
         .filter(|page| is_within(&page.name, &scope))
         .collect();
-    let placed = || {
-        pages
-            .iter()
-            .flat_map(|page| page.results.iter().map(move |result| (*page, result)))
-    };
+    let placed = pages
+        .iter()
+        .flat_map(|page| page.results.iter().map(move |result| (*page, result)));
+    let (kept, left): (Vec<Placed<'_>>, Vec<Placed<'_>>) =
+        placed.partition(|(_, result)| sieve.keeps(result));
+    let (findings, left_out) = findings(examined, &scope, &kept, &left);
     let unread = examined
         .unread
         .iter()
@@ -45,16 +50,19 @@ pub(super) fn contents(
         time: examined
             .now
             .to_rfc3339_opts(chrono::SecondsFormat::Secs, false),
-        program: program.to_owned(),
+        program: String::new(),
+        filters: Vec::new(),
+        left_out,
         keeper: keeper.map(str::to_owned),
         pages: pages.len(),
-        results: placed()
+        results: kept
+            .iter()
             .map(|(page, result)| result_of(page, result))
             .collect(),
-        findings: findings(examined, &scope, placed()),
-        acts: acts(&examined.registers, &scope),
+        findings,
+        acts: acts(&examined.registers, &scope, sieve, &kept),
         signers: signers(examined),
-        constants: constants(placed()),
+        constants: constants(kept.iter().copied()),
         unread: unread.collect(),
         scope,
     }
@@ -109,34 +117,65 @@ fn result_of(page: &VerifiedPage, result: &VerifiedResult) -> AuditResult {
     }
 }
 
-/// What is found: of the results, by computing again, of signers without enrolment, and of the notebook.
-fn findings<'e>(
+/// What is found: of the results that are kept, by computing again, of signers without enrolment, and of the notebook; and how much is found
+/// of the results that are left out. What is found at a place of no result is never left out.
+fn findings(
     examined: &Examined,
     scope: &str,
-    placed: impl Iterator<Item = (&'e VerifiedPage, &'e VerifiedResult)>,
-) -> Vec<AuditFinding> {
+    kept: &[Placed<'_>],
+    left: &[Placed<'_>],
+) -> (Vec<AuditFinding>, LeftOut) {
+    let mut found = of_results(kept);
+    found.extend(examined.unlisted.iter().map(|signer| unlisted(signer)));
+    let places = |placed: &[Placed<'_>]| -> BTreeSet<String> {
+        let places = placed.iter().map(|(page, result)| place_of(page, result));
+        places.collect()
+    };
+    let (shown, hidden) = (places(kept), places(left));
+    let is_hidden = |finding: &Finding| {
+        let place = &finding.place;
+        let label = place.label.as_ref();
+        let place = label.map(|label| format!("{}#{label}", place.file));
+        place.is_some_and(|place| hidden.contains(&place) && !shown.contains(&place))
+    };
+    let of_notebook = examined
+        .findings
+        .iter()
+        .filter(|finding| finding.place.label.is_none() || is_within(&finding.place.file, scope));
+    let (out, rest): (Vec<&Finding>, Vec<&Finding>) =
+        of_notebook.partition(|finding| is_hidden(finding));
+    found.extend(rest.into_iter().map(AuditFinding::of));
+    let mut not_told = of_results(left);
+    not_told.extend(out.into_iter().map(AuditFinding::of));
+    let note = Severity::Note.to_string();
+    let failure = Severity::Failure.to_string();
+    let left_out = LeftOut {
+        results: left.len(),
+        findings: not_told.iter().filter(|told| told.severity != note).count(),
+        failing: not_told.iter().any(|told| told.severity == failure),
+    };
+    (found, left_out)
+}
+
+fn of_results(placed: &[Placed<'_>]) -> Vec<AuditFinding> {
     let mut found = Vec::new();
     for (page, result) in placed {
         found.extend(result.findings.iter().map(AuditFinding::of));
         found.extend(differing(&place_of(page, result), &result.recomputed));
     }
-    for signer in &examined.unlisted {
-        found.push(AuditFinding {
-            name: "signer-not-on-roster".to_owned(),
-            severity: "warning".to_owned(),
-            place: format!("registers/{signer}.md"),
-            sentence: format!(
-                "{signer} is on no roster: nothing was altered, but whose signature it is rests on trust"
-            ),
-            remedy: "have the keeper put the public key on the roster".to_owned(),
-        });
-    }
-    let of_notebook = examined
-        .findings
-        .iter()
-        .filter(|finding| finding.place.label.is_none() || is_within(&finding.place.file, scope));
-    found.extend(of_notebook.map(AuditFinding::of));
     found
+}
+
+fn unlisted(signer: &str) -> AuditFinding {
+    AuditFinding {
+        name: "signer-not-on-roster".to_owned(),
+        severity: "warning".to_owned(),
+        place: format!("registers/{signer}.md"),
+        sentence: format!(
+            "{signer} is on no roster: nothing was altered, but whose signature it is rests on trust"
+        ),
+        remedy: "have the keeper put the public key on the roster".to_owned(),
+    }
 }
 
 fn differing(place: &str, recomputed: &Recomputed) -> Option<AuditFinding> {
@@ -165,8 +204,19 @@ fn differing(place: &str, recomputed: &Recomputed) -> Option<AuditFinding> {
     })
 }
 
-fn acts(registers: &[Register], scope: &str) -> Vec<AuditAct> {
-    let mut entries: Vec<&Entry> = registers.iter().flat_map(Register::entries).collect();
+fn acts(
+    registers: &[Register],
+    scope: &str,
+    sieve: &Sieve<'_>,
+    kept: &[Placed<'_>],
+) -> Vec<AuditAct> {
+    let records = kept.iter().filter_map(|(_, result)| result.record.as_ref());
+    let records: BTreeSet<Digest> = records.map(|record| record.digest).collect();
+    let mut entries: Vec<&Entry> = registers
+        .iter()
+        .flat_map(Register::entries)
+        .filter(|entry| sieve.keeps_act(entry, &records))
+        .collect();
     entries.sort_by_key(|entry| (entry.act.act().time, entry.act.act().number));
     let told = entries.into_iter().map(|entry| {
         let act = entry.act.act();
@@ -232,9 +282,7 @@ fn signers(examined: &Examined) -> Vec<AuditSigner> {
     names.into_iter().map(of).collect()
 }
 
-fn constants<'e>(
-    placed: impl Iterator<Item = (&'e VerifiedPage, &'e VerifiedResult)>,
-) -> Vec<AuditConstant> {
+fn constants<'e>(placed: impl Iterator<Item = Placed<'e>>) -> Vec<AuditConstant> {
     let mut found: BTreeMap<AuditConstant, BTreeSet<String>> = BTreeMap::new();
     for (page, result) in placed {
         let stored = embedded(&result.answer)

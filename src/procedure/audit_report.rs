@@ -1,7 +1,7 @@
 //! An audit as Markdown, HTML, CSV or JSON.
 
 use crate::procedure::audit::Audit;
-use crate::procedure::audit_sections::{Section, sections};
+use crate::procedure::audit_sections::{Section, narrowed, sections};
 use crate::procedure::countersign::escaped;
 use std::fmt::Write;
 
@@ -204,6 +204,9 @@ fn csv(audits: &[Audit]) -> String {
                 [place, name, "", "", &finding.sentence, &finding.remedy],
             );
         }
+        if let Some(sentence) = narrowed(audit) {
+            row("note", ["", "narrowed", "", "", &sentence, ""]);
+        }
         for unread in &audit.unread {
             row(
                 "warning",
@@ -237,6 +240,8 @@ mod tests {
             title: Some("Vessel | Street <b>".to_owned()),
             notebook: Some("5f1c".to_owned()),
             scope: String::new(),
+            filters: Vec::new(),
+            left_out: crate::procedure::LeftOut::default(),
             time: "2026-11-10T08:00:00+01:00".to_owned(),
             program: "ionfolio 0.1.0".to_owned(),
             keeper: None,

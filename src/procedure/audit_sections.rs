@@ -57,18 +57,26 @@ fn summary(audit: &Audit) -> Section {
         .keeper
         .clone()
         .unwrap_or_else(|| "no fingerprint given: the roster is trusted as found".to_owned());
-    let verdict = if audit.failed() {
-        "Something does not verify; see what was found."
+    let verdict = match (audit.failed(), audit.filters.is_empty()) {
+        (true, _) => "Something does not verify; see what was found.",
+        (false, true) => "Everything that was signed verifies.",
+        (false, false) => "Everything reported here that was signed verifies.",
+    };
+    let mut sentences = vec![verdict.to_owned()];
+    sentences.extend(narrowed(audit));
+    let filters = if audit.filters.is_empty() {
+        "nothing left out".to_owned()
     } else {
-        "Everything that was signed verifies."
+        audit.filters.join("; ")
     };
     Section {
         heading: "Summary",
-        sentences: vec![verdict.to_owned()],
+        sentences,
         columns: &["", "found"],
         rows: vec![
             row("notebook", audit.notebook.clone().unwrap_or_default()),
             row("reported on", scope),
+            row("narrowed to", filters),
             row("examined", audit.time.clone()),
             row("by", audit.program.clone()),
             row("keeper of the roster", keeper),
@@ -80,6 +88,25 @@ fn summary(audit: &Audit) -> Section {
             row("signed results that do not verify", failing.to_string()),
         ],
     }
+}
+
+/// What a narrowed report leaves out, so that nobody takes it for the whole.
+pub(super) fn narrowed(audit: &Audit) -> Option<String> {
+    if audit.filters.is_empty() {
+        return None;
+    }
+    let left = &audit.left_out;
+    let worst = if left.failing {
+        ", and some do not verify"
+    } else {
+        ""
+    };
+    Some(format!(
+        "The report is narrowed to {}. Left out: {} results, with {} findings that ask for something{worst}.",
+        audit.filters.join(", "),
+        left.results,
+        left.findings
+    ))
 }
 
 fn findings(audit: &Audit) -> Section {
@@ -179,7 +206,10 @@ fn never_reviewed(audit: &Audit) -> Section {
         .collect();
     Section {
         heading: "Never reviewed",
-        sentences: none_where_empty(&rows, "Every result in force was reviewed or approved."),
+        sentences: none_where_empty(
+            &rows,
+            "Every result in force that is reported on was reviewed or approved.",
+        ),
         columns: &["place", "performed"],
         rows,
     }
@@ -197,7 +227,7 @@ fn amendments(audit: &Audit) -> Section {
     let rows: Vec<Vec<String>> = rows.collect();
     Section {
         heading: "Amendments",
-        sentences: none_where_empty(&rows, "Nothing was amended."),
+        sentences: none_where_empty(&rows, "Nothing that is reported on was amended."),
         columns: &["place", "takes the place of", "reason", "performed"],
         rows,
     }

@@ -83,6 +83,7 @@ impl Inspection<'_> {
                 Mark::Superseded => "superseded",
                 Mark::Withdrawn => "withdrawn",
             }),
+            question: question.map(str::to_owned),
             answer: region.answer().text().to_owned(),
             record: verification.record,
             findings,

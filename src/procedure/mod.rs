@@ -9,6 +9,7 @@ mod agent;
 mod amend;
 mod audit;
 mod audit_contents;
+mod audit_filter;
 mod audit_report;
 mod audit_sections;
 mod claim;
@@ -39,7 +40,10 @@ mod verify;
 
 pub use agent::AgentError;
 pub use amend::amend_page;
-pub use audit::{Audit, AuditAct, AuditConstant, AuditFinding, AuditResult, AuditSigner, audit};
+pub use audit::{
+    Audit, AuditAct, AuditConstant, AuditFinding, AuditResult, AuditSigner, LeftOut, audit,
+};
+pub use audit_filter::{AuditFilter, AuditFilterError};
 pub use audit_report::{AuditFormat, audit_report};
 pub use compute::{
     ComputeError, Computed, ComputedBlock, Mode, Standing, compute_page, compute_text,

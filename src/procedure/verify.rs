@@ -37,6 +37,8 @@ pub struct VerifiedResult {
     pub draft: bool,
     /// Whether it is marked as superseded or withdrawn.
     pub mark: Option<&'static str>,
+    /// The question: as it was signed where it is kept so, else the block as it stands.
+    pub question: Option<String>,
     /// The answer as it stands.
     pub answer: String,
     /// What is claimed and who did what with it, if it can be read.
@@ -71,6 +73,7 @@ impl VerifiedResult {
             label: label.to_owned(),
             draft: true,
             mark: None,
+            question: None,
             answer: String::new(),
             record: None,
             findings: Vec::new(),
