@@ -102,7 +102,7 @@ pub(super) fn narrowed(audit: &Audit) -> Option<String> {
         ""
     };
     Some(format!(
-        "The report is narrowed to {}. Left out: {} results, with {} findings that ask for something{worst}.",
+        "The report is narrowed to {}. Results left out: {}; findings of them that ask for something: {}{worst}.",
         audit.filters.join(", "),
         left.results,
         left.findings
