@@ -186,8 +186,12 @@ fn with_ascii_signs(text: &str) -> String {
 
 /// Splits `2.5×10^-3`, `2.5 × 10⁻³` or `2.5e-3` into mantissa and exponent.
 fn split_exponent(text: &str) -> Result<(&str, i32), DecimalError> {
-    if let Some((mantissa, power)) = text.split_once(['x', 'X', '×', '✕', '·', '⋅', '*']) {
-        return Ok((mantissa.trim_end(), power_of_ten(power.trim_start())?));
+    let times = ['x', 'X', '×', '✕', '·', '⋅', '*'];
+    if let (Some(sign), Some((mantissa, power))) = (
+        text.chars().find(|c| times.contains(c)),
+        text.split_once(times),
+    ) {
+        return Ok((mantissa.trim_end(), power_of_ten(power.trim_start(), sign)?));
     }
     match text.split_once(['e', 'E']) {
         Some((mantissa, power)) => Ok((mantissa, exponent_of(power)?)),
@@ -196,9 +200,11 @@ fn split_exponent(text: &str) -> Result<(&str, i32), DecimalError> {
 }
 
 /// The exponent of `10^-3`, `10⁻³` or `10-3`. Without sign, caret or superscript `103` may be one number, and is refused.
-fn power_of_ten(text: &str) -> Result<i32, DecimalError> {
+///
+/// `sign` is the multiplication sign before it, which does not belong where nothing follows.
+fn power_of_ten(text: &str, sign: char) -> Result<i32, DecimalError> {
     let found = |text: &str| DecimalError::NotANumber {
-        found: text.chars().next().unwrap_or('×'),
+        found: text.chars().next().unwrap_or(sign),
     };
     let power = text.strip_prefix("10").ok_or_else(|| found(text))?;
     let plain: String = power.chars().map(plain_from_superscript).collect();
@@ -369,6 +375,16 @@ mod tests {
                 matches!(Decimal::parse(text), Err(DecimalError::NotANumber { .. })),
                 "{text}"
             );
+        }
+    }
+
+    #[test]
+    fn the_character_that_is_named_was_written() {
+        for text in ["x", "2.5*", "1·", "2.5×10"] {
+            let Err(DecimalError::NotANumber { found }) = Decimal::parse(text) else {
+                panic!("{text} was read");
+            };
+            assert!(text.contains(found), "{text}: {found}");
         }
     }
 
